@@ -1,0 +1,135 @@
+"""The validated content of a case file, in SI units, with no geometry computed yet."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from nightcap.geometry.errors import Problem
+from nightcap.geometry.shapes import Shape
+
+
+@dataclass(frozen=True)
+class Material:
+    """A lossless-to-first-order dielectric."""
+
+    permittivity: float
+    """Relative to eps0."""
+    loss_tangent: float = 0.0
+    name: str = ""
+    """Name for pictures and tables; may be empty."""
+
+
+@dataclass(frozen=True)
+class Coating:
+    """One layer of insulation around a conductor."""
+
+    thickness: float
+    """m."""
+    material: Material
+
+
+@dataclass(frozen=True)
+class Conductor:
+    """A perfect conductor and its insulation, from the inside out."""
+
+    name: str
+    shape: Shape
+    coatings: tuple[Coating, ...] = ()
+    floating: bool = False
+
+
+@dataclass(frozen=True)
+class Dielectric:
+    """A painted region; later ones cover earlier ones."""
+
+    name: str
+    shape: Shape
+    material: Material
+
+
+@dataclass(frozen=True)
+class Shield:
+    """A grounded conductor whose inside is ``shape``."""
+
+    shape: Shape
+    name: str = "shield"
+
+
+@dataclass(frozen=True)
+class OpenSpace:
+    """Unbounded space all around."""
+
+
+@dataclass(frozen=True)
+class GroundPlane:
+    """A grounded plane y = ``at``, unbounded; the layout lies above it."""
+
+    at: float = 0.0
+    """m."""
+    name: str = "plane"
+
+
+Boundary = Shield | OpenSpace | GroundPlane
+
+
+@dataclass(frozen=True)
+class Limits:
+    """What a case may use before it stops with 'accuracy not reached'."""
+
+    triangles: int = 200_000
+    memory: float = 4e9
+    """bytes."""
+    time: float = 600.0
+    """s."""
+
+
+@dataclass(frozen=True)
+class Expectation:
+    """A matrix that the result is compared with."""
+
+    capacitance: tuple[tuple[float, ...], ...]
+    """Maxwell capacitance matrix, F/m, of the reduced problem (after tie and floating)."""
+    tolerance: float
+    """Relative to sqrt(C_ii C_jj)."""
+    source: str
+    exact: bool = False
+    """True if the value is exact to all digits: it must then lie inside the bracket."""
+
+
+@dataclass(frozen=True)
+class Source:
+    """Where each key of a case was written, so that later checks can point at it."""
+
+    file: str = ""
+    lines: Mapping[str, int] = field(default_factory=dict)
+    """Dotted key path to line number, counted from 1."""
+
+    def problem(self, key: str, text: str) -> Problem:
+        """A mistake at a key; if the key itself has no line, that of the nearest key above it."""
+        path = key
+        while path and path not in self.lines:
+            path = path[: max(path.rfind("."), path.rfind("["), 0)]
+        return Problem(self.file, self.lines.get(path), key, text)
+
+
+@dataclass(frozen=True)
+class Case:
+    """Everything a case file says."""
+
+    name: str
+    """The file's stem."""
+    title: str
+    conductors: tuple[Conductor, ...]
+    boundary: Boundary
+    reference: str
+    """Name of the conductor that the matrix is relative to."""
+    dielectrics: tuple[Dielectric, ...] = ()
+    background: Material = Material(1.0)
+    ties: tuple[tuple[str, ...], ...] = ()
+    """Groups of conductors joined together; a group takes the name of its first member."""
+    accuracy: float = 1e-4
+    """Half-width of the bracket of every entry, relative to sqrt(C_ii C_jj)."""
+    limits: Limits = Limits()
+    expect: Expectation | None = None
+    source: Source = field(default=Source(), compare=False)

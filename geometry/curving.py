@@ -1,0 +1,123 @@
+"""Curved triangles: polynomial maps whose edges follow the exact curves, proved invertible."""
+
+from __future__ import annotations
+
+import math
+from functools import cache
+
+import numpy as np
+
+from nightcap.geometry import polynomials
+from nightcap.geometry.curves import Floats
+from nightcap.geometry.mesh import CurvedTriangles, Flags, Triangulation
+from nightcap.geometry.polynomials import EDGES
+
+ORDER = 8
+"""Order of the polynomial edges. A chord of a twelfth of a circle leaves the circle by 1e-13 of its radius."""
+
+
+def curved_triangles(mesh: Triangulation, spans: Floats, bent: Flags) -> tuple[CurvedTriangles, Flags]:
+    """Builds the maps of all triangles with bent edges, and tells which (K,) are proved valid.
+
+    X = affine + sum over bent edges of l_a l_b d(t) / (t (1 - t)), d the interpolated distance of the curve from
+    its chord. spans : (B, 2) curve parameters at the ends of each curve edge; bent : (B,) True for those that follow
+    their curve. Source: blending functions, Gordon and Hall 1973; for triangles Szabo and Babuska 1991.
+    """
+    is_bent = np.append(bent, False)[mesh.edge_rank][mesh.triangle_edges]
+    index = np.flatnonzero(is_bent.any(axis=1))
+    x, y = polynomials.nodes(ORDER)
+    nodes = np.einsum("nk,tkd->tnd", np.stack([1 - x - y, x, y], axis=1), mesh.points[mesh.triangles[index]])
+    offsets, defects = _edge_offsets(mesh, spans)
+    defect = np.zeros(len(index))
+    for local in range(3):
+        rank = np.where(is_bent[index, local], mesh.edge_rank[mesh.triangle_edges[index, local]], -1)
+        nodes += np.einsum("nk,tkd->tnd", _blending(local), offsets[rank])
+        defect += defects[rank]
+    floor, stretch = jacobian_bounds(nodes, mesh.orientation[index])
+    displacement = defect / stretch
+    dilatation = 2 * displacement / np.maximum(1 - displacement, 1e-3)
+    return CurvedTriangles(index, nodes, dilatation), floor > 0
+
+
+def _edge_offsets(mesh: Triangulation, spans: Floats) -> tuple[Floats, Floats]:
+    """Distance of curve from chord at the inner Lobatto points (B + 1, ORDER - 1, 2), and a bound (B + 1,) on the
+    gradient of what interpolation leaves of it, m. The last row, of zeros, serves edges that lie on no curve."""
+    t = polynomials.lobatto(ORDER)[1:-1]
+    offsets = np.zeros((len(spans) + 1, ORDER - 1, 2))
+    defects = np.zeros(len(spans) + 1)
+    by_piece = np.argsort(mesh.curve_piece, kind="stable")
+    for rows in np.split(by_piece, np.flatnonzero(np.diff(mesh.curve_piece[by_piece])) + 1):
+        curve = mesh.layout.pieces[mesh.curve_piece[rows[0]]].curve
+        if curve.curvature == 0.0:
+            continue
+        first, last = spans[rows].T
+        start, end = mesh.points[mesh.curve_edges[rows]].transpose(1, 0, 2)
+        chord = (1 - t)[:, None] * start[:, None] + t[:, None] * end[:, None]
+        offsets[rows] = curve.at(first[:, None] + (last - first)[:, None] * t) - chord
+        turn = curve.length * abs(curve.curvature) * np.abs(last - first)
+        defects[rows] = _interpolation_defect(turn) / abs(curve.curvature)
+    return offsets, defects
+
+
+@cache
+def _blending(local: int) -> Floats:
+    """(n, ORDER - 1): carries the inner offsets of a local edge to all nodes of the triangle."""
+    x, y = polynomials.nodes(ORDER)
+    barycentric = np.stack([1 - x - y, x, y])
+    a, b = EDGES[local]
+    t = (1 + barycentric[b] - barycentric[a]) / 2
+    inner = polynomials.lobatto(ORDER)[1:-1]
+    lagrange = [
+        np.prod([(t - other) / (own - other) for other in inner if other != own], axis=0) / (own * (1 - own))
+        for own in inner
+    ]
+    return (barycentric[a] * barycentric[b])[:, None] * np.stack(lagrange, axis=1)
+
+
+@cache
+def _defect_constants() -> tuple[float, float]:
+    """Factors of theta^(q+1) and theta^(q+2) in the gradient of the blended interpolation error.
+
+    The error is e(t) = t (t - 1) w(t) f[t_0 .. t_q, t] with w over the inner nodes; divided differences of order k of
+    a curve of unit radius are at most theta^k / k!. |grad(l_a l_b)| <= sqrt 2, l_a l_b <= 1/4, |grad t| <= sqrt 5 / 2.
+    """
+    w = np.polynomial.Polynomial.fromroots(polynomials.lobatto(ORDER)[1:-1])
+    t = np.linspace(0.0, 1.0, 2001)
+    value, slope = 1.01 * np.abs(w(t)).max(), 1.01 * np.abs(w.deriv()(t)).max()
+    low, high = math.factorial(ORDER + 1), math.factorial(ORDER + 2)
+    factor = math.sqrt(5.0) / 8
+    return (math.sqrt(2.0) * value + factor * slope) / low, factor * value / high
+
+
+def _interpolation_defect(turn: Floats) -> Floats:
+    """Bound on the gradient, per unit radius, of what is left of an arc that turns by so many radians."""
+    first, second = _defect_constants()
+    return first * turn ** (ORDER + 1) + second * turn ** (ORDER + 2)
+
+
+def jacobians(nodes: Floats, points: Floats) -> Floats:
+    """(2, 2, K, q) derivative a of coordinate d of each map (K, n, 2) at reference points (2, q).
+
+    Affine part and bend apart: triangles much thinner than their distance from the origin keep their digits.
+    """
+    x, y = polynomials.nodes(ORDER)
+    corners = nodes[:, :3] - nodes[:, :1]
+    bends = nodes - nodes[:, :1] - np.einsum("kn,tkd->tnd", np.stack([1 - x - y, x, y]), corners)
+    _, gradients = polynomials.lagrange(ORDER, points)
+    slopes = np.einsum("anq,tnd->adtq", gradients, bends, optimize=True)
+    return np.asarray(slopes + corners[:, 1:].transpose(1, 2, 0)[..., None])
+
+
+def jacobian_bounds(nodes: Floats, orientation: Floats) -> tuple[Floats, Floats]:
+    """A lower bound of each map's Jacobian determinant (K,), m^2, and a low estimate of its least stretch (K,), m.
+
+    The bound is the least Bernstein coefficient of the determinant, a polynomial of degree 2 (ORDER - 1).
+    """
+    degree = 2 * (ORDER - 1)
+    dx, dy = jacobians(nodes, polynomials.nodes(degree))
+    determinant = orientation[:, None] * (dx[0] * dy[1] - dx[1] * dy[0])
+    floor = (determinant @ polynomials.bernstein_from_nodal(degree).T).min(axis=1, initial=np.inf)
+    rounding = 1e-10 * np.abs(determinant).max(axis=1, initial=0.0)
+    norm = np.sqrt((dx**2).sum(0) + (dy**2).sum(0))  # at least the greatest singular value
+    stretch = (np.maximum(determinant, 0.0) / norm).min(axis=1, initial=np.inf) / 2
+    return floor - rounding, np.maximum(stretch, 1e-300)

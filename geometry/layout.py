@@ -1,0 +1,61 @@
+"""A layout: the plane cut into regions by exact curves, each region a dielectric or the inside of a conductor."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from nightcap.geometry.case import Material
+from nightcap.geometry.curves import Curve, Floats
+
+
+def conductor_side(conductor: int) -> int:
+    """The side number that stands for a conductor; its own inverse."""
+    return -1 - conductor
+
+
+@dataclass(frozen=True)
+class Piece:
+    """A curve between two points of the layout, meeting others only there."""
+
+    curve: Curve
+    """Exact; its ends are points[start] and points[end] to within the layout's tolerance."""
+    start: int
+    end: int
+    sides: tuple[int, int]
+    """What lies left and right: a region number, or ``conductor_side(k)``. On the rim: the near region, the far one."""
+
+
+@dataclass(frozen=True)
+class Region:
+    """A connected dielectric face, meshed on its own."""
+
+    loops: tuple[tuple[int, ...], ...]
+    """Closed walks over pieces: +(k+1) along piece k, -(k+1) against it. The outer loop first,
+    counter-clockwise; then the holes, clockwise."""
+    material: int
+    """Index into Layout.materials."""
+    far: bool = False
+    """True for the inverted outside of the rim."""
+
+
+@dataclass(frozen=True, eq=False)
+class Layout:
+    """Closed regions with exact outlines, overlaps resolved.
+
+    Open space is a near and a far region that share the rim: the outside of the circle ``rim_centre``,
+    ``rim_radius`` appears inverted on its inside, so the far region overlaps the near ones.
+    """
+
+    points: Floats
+    """(P, 2), m."""
+    pieces: tuple[Piece, ...]
+    regions: tuple[Region, ...]
+    materials: tuple[Material, ...]
+    conductors: tuple[str, ...]
+    """All of them; a shield or plane comes last."""
+    reference: int
+    """Index into conductors."""
+    size: float
+    """Greatest extent of the drawn shapes, m."""
+    rim: tuple[tuple[float, float], float] | None = None
+    """Centre and radius of the rim, if space is open."""

@@ -1,0 +1,252 @@
+"""How long the edges of the first mesh may be: short at corners and in narrow gaps, long elsewhere."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from nightcap.geometry.curves import Floats, Segment
+from nightcap.geometry.layout import Layout, Piece
+from nightcap.geometry.mesh import Ints
+
+TURN = math.tau / 10
+"""Greatest angle that one edge spans on an arc, radians."""
+GROWTH = 0.7
+"""How fast edges may grow with the distance from a corner."""
+GAP = 1.3
+"""An edge beside a gap g along a curve of radius r is at most GAP sqrt((r + g) g)."""
+
+
+@dataclass(frozen=True)
+class Grading:
+    """How far the first mesh is graded, as fractions of the local length."""
+
+    corner: float = 1e-3
+    """Edge length at a sharp corner of a conductor."""
+    bend: float = 5e-2
+    """Edge length at a corner of a dielectric, or where materials meet on a conductor."""
+    contact: float = 1e-2
+    """Edge length where two curves touch."""
+
+
+def grading_for(accuracy: float) -> Grading:
+    """A first grading that suits an accuracy; refinement by shares does the rest.
+
+    At a corner of 270 degrees the share of the innermost ring of size h goes as h^(4/3).
+    """
+    return Grading(
+        corner=min(max(0.3 * accuracy**0.75, 1e-7), 0.05),
+        bend=min(max(accuracy**0.5, 1e-4), 0.1),
+        contact=min(max(accuracy ** (1 / 3), 1e-3), 0.05),
+    )
+
+
+def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
+    """For each piece the parameters, from 0 to 1, of the mesh vertices along it."""
+    sizes = _Sizes(layout, grading)
+    owner, t0, t1 = sizes.cells()
+    middle = (t0 + t1) / 2
+    cell_load = (t1 - t0) * sizes.lengths[owner] / sizes.at(owner, middle)
+    twins = _pieces_with_twin(layout)
+    order = np.lexsort((t0, owner))
+    bounds = np.searchsorted(owner[order], np.arange(len(layout.pieces) + 1))
+    divisions = []
+    for k in range(len(layout.pieces)):
+        cells = order[bounds[k] : bounds[k + 1]]
+        load = np.concatenate([[0.0], np.cumsum(cell_load[cells])])
+        ends = np.concatenate([t0[cells], [1.0]])
+        n = max(math.ceil(load[-1] - 0.2), 2 if k in twins else 1)
+        divisions.append(np.interp(np.linspace(0.0, load[-1], n + 1), load, ends))
+    return divisions
+
+
+def _pieces_with_twin(layout: Layout) -> set[int]:
+    """Pieces that share both ends with another: a single edge each would make them one."""
+    seen: dict[tuple[int, int], list[int]] = {}
+    for k, piece in enumerate(layout.pieces):
+        seen.setdefault((min(piece.start, piece.end), max(piece.start, piece.end)), []).append(k)
+    return {k for group in seen.values() if len(group) > 1 for k in group}
+
+
+class _Sizes:
+    """Edge lengths asked for, evaluated for many points of many pieces at once."""
+
+    def __init__(self, layout: Layout, grading: Grading) -> None:
+        pieces = layout.pieces
+        self.pieces = pieces
+        self.lengths = np.array([piece.curve.length for piece in pieces])
+        curvature = np.abs([piece.curve.curvature for piece in pieces])
+        self.radius = np.where(curvature > 0, 1 / np.maximum(curvature, 1e-300), np.inf)
+        self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, TURN * self.radius)
+        self.sources, self.source_size = _corner_sources(layout, grading)
+        self.near = _close_pairs(layout, self.coarsest)
+        self.floor = grading.contact * np.where(np.isinf(self.radius), layout.size, self.radius)
+        self.arcs = np.array([_arc_row(piece) for piece in pieces])
+        self.ends = np.array([(piece.curve.start, piece.curve.end) for piece in pieces])
+
+    def points(self, owner: Ints, t: Floats) -> Floats:
+        """(n, 2) points at parameters t (n,) of pieces owner (n,)."""
+        centre, radius, angle, sweep = self.arcs[owner, :2], self.arcs[owner, 2], self.arcs[owner, 3], self.arcs[owner, 4]
+        start, end = self.ends[owner].transpose(1, 0, 2)
+        phi = angle + t * sweep
+        on_arc = centre + radius[:, None] * np.stack([np.cos(phi), np.sin(phi)], axis=1)
+        return np.where((radius > 0)[:, None], on_arc, start + t[:, None] * (end - start))
+
+    def at(self, owner: Ints, t: Floats) -> Floats:
+        """(n,) edge lengths, m."""
+        x = self.points(owner, t)
+        size = self.coarsest[owner].copy()
+        for source, least in zip(self.sources, self.source_size, strict=True):
+            np.minimum(size, least + GROWTH * np.hypot(*(x - source).T), out=size)
+        row, other = _expand(self.near, owner)
+        gap = self._distance(x[row], other)
+        r = np.minimum(self.radius[owner[row]], self.radius[other])
+        law = np.full(len(row), np.inf)
+        bent = np.isfinite(r)
+        law[bent] = GAP * np.sqrt((r[bent] + gap[bent]) * gap[bent])
+        np.minimum.at(size, row, np.maximum(law, np.minimum(self.floor[owner[row]], self.floor[other])))
+        return size
+
+    def _distance(self, x: Floats, other: Ints) -> Floats:
+        """(n,) distances from points x (n, 2) to pieces other (n,)."""
+        start, end = self.ends[other].transpose(1, 0, 2)
+        chord = end - start
+        along = np.clip(((x - start) * chord).sum(1) / np.maximum((chord**2).sum(1), 1e-300), 0.0, 1.0)
+        to_line = np.hypot(*(x - start - along[:, None] * chord).T)
+        to_ends = np.minimum(np.hypot(*(x - start).T), np.hypot(*(x - end).T))
+        centre, radius, angle, sweep = self.arcs[other, :2], self.arcs[other, 2], self.arcs[other, 3], self.arcs[other, 4]
+        away = x - centre
+        turned = np.sign(sweep) * (np.arctan2(away[:, 1], away[:, 0]) - angle)
+        within = np.mod(turned, math.tau) <= np.abs(sweep)
+        to_arc = np.where(within, np.abs(np.hypot(*away.T) - radius), to_ends)
+        return np.where(radius > 0, to_arc, to_line)
+
+    def cells(self) -> tuple[Ints, Floats, Floats]:
+        """Intervals of the pieces, halved until each is no longer than the edges asked for in its middle."""
+        owner = np.repeat(np.arange(len(self.pieces)), 2)
+        t0 = np.tile([0.0, 0.5], len(self.pieces))
+        t1 = t0 + 0.5
+        done: list[tuple[Ints, Floats, Floats]] = []
+        for _ in range(60):
+            long = (t1 - t0) * self.lengths[owner] > self.at(owner, (t0 + t1) / 2)
+            done.append((owner[~long], t0[~long], t1[~long]))
+            owner, t0, t1 = owner[long], t0[long], t1[long]
+            if owner.size == 0:
+                break
+            middle = (t0 + t1) / 2
+            owner, t0, t1 = np.tile(owner, 2), np.concatenate([t0, middle]), np.concatenate([middle, t1])
+        done.append((owner, t0, t1))
+        return tuple(np.concatenate(part) for part in zip(*done, strict=True))  # type: ignore[return-value]
+
+
+def _arc_row(piece: Piece) -> tuple[float, float, float, float, float]:
+    curve = piece.curve
+    if isinstance(curve, Segment):
+        return (0.0, 0.0, 0.0, 0.0, 0.0)
+    return (*curve.centre, curve.radius, curve.start_angle, curve.sweep)  # type: ignore[attr-defined]
+
+
+def _expand(lists: list[Ints], owner: Ints) -> tuple[Ints, Ints]:
+    """Rows of ``owner`` repeated for each entry of their list, and those entries."""
+    counts = np.array([len(entries) for entries in lists])
+    starts = np.concatenate([[0], np.cumsum(counts)])
+    flat = np.concatenate([*lists, np.empty(0, dtype=np.int64)]).astype(np.int64)
+    per_row = counts[owner]
+    row = np.repeat(np.arange(len(owner)), per_row)
+    within = np.arange(len(row)) - np.repeat(np.cumsum(per_row) - per_row, per_row)
+    return row, flat[starts[owner[row]] + within]
+
+
+def _corner_sources(layout: Layout, grading: Grading) -> tuple[Floats, Floats]:
+    """Points where the field is not smooth (n, 2), and the edge lengths (n,) wanted there."""
+    arms: dict[int, list[tuple[float, Piece]]] = {}
+    for piece in layout.pieces:
+        for point, t, sense in ((piece.start, 0.0, 1.0), (piece.end, 1.0, -1.0)):
+            direction = sense * piece.curve.tangent(np.array(t))
+            arms.setdefault(point, []).append((math.atan2(direction[1], direction[0]), piece))
+    points, sizes = [], []
+    for point, meeting in arms.items():
+        length = min(piece.curve.length for _, piece in meeting)
+        fraction = _fraction(meeting, grading)
+        if fraction is not None:
+            points.append(layout.points[point])
+            sizes.append(fraction * length)
+    return np.reshape(points, (-1, 2)), np.array(sizes)
+
+
+def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | None:
+    """The grading that a point needs at which these pieces meet, or None where it is smooth."""
+    angles = sorted(angle % math.tau for angle, _ in meeting)
+    openings = np.diff([*angles, angles[0] + math.tau])
+    smooth = len(angles) == 2 and abs(openings[0] - math.pi) < 1e-6
+    cusped = bool((openings < 1e-6).any())
+    if smooth or cusped:
+        return None
+    on_conductor = any(min(piece.sides) < 0 for _, piece in meeting)
+    if on_conductor and _opens_wide(meeting):
+        return grading.corner
+    return grading.bend if len(angles) > 2 or not on_conductor else None
+
+
+def _opens_wide(meeting: list[tuple[float, Piece]]) -> bool:
+    """Whether the dielectric around a point of a conductor's surface spans more than a half turn."""
+    surface = sorted(angle % math.tau for angle, piece in meeting if min(piece.sides) < 0)
+    if len(surface) != 2:
+        return True
+    between = surface[1] - surface[0]
+    others = [angle % math.tau for angle, piece in meeting if min(piece.sides) >= 0]
+    if others:
+        inside = surface[0] < others[0] < surface[1]
+        return (between if inside else math.tau - between) > math.pi + 1e-6
+    return _dielectric_angle(meeting) > math.pi + 1e-6
+
+
+def _dielectric_angle(meeting: list[tuple[float, Piece]]) -> float:
+    """Angle of the dielectric at a corner where just two pieces of a conductor's surface meet."""
+    (angle, piece), (other, _) = meeting
+    starts_here = _leaves_along(angle, piece)
+    left, right = piece.sides if starts_here else piece.sides[::-1]
+    turn = (other - angle) % math.tau
+    return turn if left >= 0 > right else math.tau - turn
+
+
+def _leaves_along(angle: float, piece: Piece) -> bool:
+    direction = piece.curve.tangent(np.array(0.0))
+    return abs(math.remainder(math.atan2(direction[1], direction[0]) - angle, math.tau)) < 1e-9
+
+
+def _close_pairs(layout: Layout, coarsest: Floats) -> list[Ints]:
+    """For each piece the others whose gap to it may matter; neighbours at a shared point only if they form a cusp."""
+    boxes = np.array([_box(piece) for piece in layout.pieces])
+    pairs = []
+    for k, piece in enumerate(layout.pieces):
+        reach = coarsest[k]
+        apart = np.maximum(boxes[:, :2] - boxes[k, 2:], boxes[k, :2] - boxes[:, 2:]).max(axis=1)
+        candidates = [j for j in np.flatnonzero(apart < reach) if j != k and _counts(piece, layout.pieces[j])]
+        pairs.append(np.array(candidates, dtype=np.int64))
+    return pairs
+
+
+def _box(piece: Piece) -> Floats:
+    points = piece.curve.at(np.linspace(0, 1, 9))
+    sag = 0.02 * piece.curve.length if piece.curve.curvature else 0.0
+    return np.concatenate([points.min(axis=0) - sag, points.max(axis=0) + sag])
+
+
+def _counts(piece: Piece, other: Piece) -> bool:
+    if piece.curve.curvature == 0.0 and other.curve.curvature == 0.0:
+        return False
+    shared = {piece.start, piece.end} & {other.start, other.end}
+    return all(_forms_cusp(piece, other, point) for point in shared)
+
+
+def _forms_cusp(piece: Piece, other: Piece, point: int) -> bool:
+    one, two = (_outgoing(p, point) for p in (piece, other))
+    return float(one @ two) > 1 - 1e-9
+
+
+def _outgoing(piece: Piece, point: int) -> Floats:
+    at_start = piece.start == point
+    return piece.curve.tangent(np.array(0.0 if at_start else 1.0)) * (1.0 if at_start else -1.0)

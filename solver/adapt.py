@@ -1,0 +1,72 @@
+"""What to do next when a bracket is still too wide: raise the order, or split the triangles that hold its width."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from nightcap.geometry.curves import Floats
+from nightcap.geometry.mesh import Flags, Mesh
+from nightcap.geometry.refine import refine
+from nightcap.solver.fields import Fields
+
+HIGHEST_ORDER = 8
+WIDESPREAD = 0.25
+"""Where more than this fraction of the triangles is to blame, a higher order pays."""
+LEVELS = 4
+"""Splits towards a point of the outlines in one round: only there can a field be singular."""
+
+
+@dataclass(frozen=True, eq=False)
+class Step:
+    """The next round's order and mesh, and what was changed, in words."""
+
+    order: int
+    mesh: Mesh
+    action: str
+
+
+def first_order(accuracy: float) -> int:
+    """Order of the first round."""
+    return 4 if accuracy >= 3e-5 else 6
+
+
+def next_step(fields: Fields, accuracy: float) -> Step:
+    """Chooses between order and triangles by how the width of the bracket is spread over the mesh.
+
+    If no triangle held more than its equal part of half the permitted width, the bracket would be narrow enough; those
+    that do are to blame.
+    """
+    order = fields.stiffness.order
+    excess = fields.bracket.relative / accuracy
+    blamed = _blamed(fields, accuracy)
+    if blamed.mean() > WIDESPREAD and order < HIGHEST_ORDER:
+        higher = min(order + (2 if excess < 1e3 else 4), HIGHEST_ORDER)
+        return Step(higher, fields.mesh, f"order {order} to {higher}")
+    mesh = _split(fields.mesh, blamed)
+    return Step(order, mesh, f"{np.count_nonzero(blamed)} triangles split")
+
+
+def relative_share(fields: Fields) -> Floats:
+    """(T,) each triangle's share of the half-width, relative to C_ii, for the conductor where it matters most."""
+    return np.asarray((fields.share / np.diag(fields.bracket.value)).max(axis=1) / 2)
+
+
+def _blamed(fields: Fields, accuracy: float) -> Flags:
+    share = relative_share(fields)
+    blamed = share > accuracy / (2 * len(share))
+    if not blamed.any():
+        blamed = share >= share.max() / 2
+    return np.asarray(blamed)
+
+
+def _split(mesh: Mesh, blamed: Flags) -> Mesh:
+    """Splits the blamed triangles, and again those that touch a point of the outlines that a blamed one touched."""
+    drawn = len(mesh.layout.points)
+    touched = np.unique(mesh.triangles[blamed])
+    touched = touched[touched < drawn]
+    mesh = refine(mesh, blamed)
+    for _ in range(LEVELS - 1):
+        mesh = refine(mesh, np.isin(mesh.triangles, touched).any(axis=1))
+    return mesh

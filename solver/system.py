@@ -1,0 +1,130 @@
+"""The two global problems: potentials from above, flux functions from below."""
+
+from __future__ import annotations
+
+import numpy as np
+from scipy import sparse
+from scipy.sparse.linalg import SuperLU, splu
+from skfem.assembly import Dofs
+
+from nightcap.geometry import polynomials
+from nightcap.geometry.curves import Floats
+from nightcap.geometry.mesh import Ints, Mesh
+from nightcap.solver.bracket import Bracket
+from nightcap.solver.cuts import CutTree, cut_tree
+from nightcap.solver.element import ElementTriLagrange, skeleton_size
+from nightcap.solver.fields import Fields
+from nightcap.solver.stiffness import edge_pairing, stiffness
+from nightcap.solver.stopwatch import Stopwatch
+
+ALLOWANCE = 1e-12
+"""What rounding may do to a bound, relative; both are widened by it."""
+
+
+def solve_fields(mesh: Mesh, order: int, watch: Stopwatch) -> Fields:
+    """Solves both problems for all conductors on one mesh."""
+    with watch.on("assembly"):
+        local = stiffness(mesh, order)
+        dofs = Dofs(mesh.topology, ElementTriLagrange(order)).element_dofs[: skeleton_size(order)].T.astype(np.int64)
+        above = local.skeleton * (mesh.greatest_permittivity * (1 + local.dilatation))[:, None, None]
+        below = local.skeleton * ((1 + local.dilatation) / mesh.least_permittivity)[:, None, None]
+    potential = _potentials(mesh, order, dofs, above, watch)
+    upper = _energy(above, potential)
+    flux, P = _fluxes(mesh, order, dofs, below, watch)
+    lower = np.linalg.inv(P)
+    flux = flux @ lower
+    pairing = edge_pairing(order) * (mesh.orientation * np.where(mesh.far, -1.0, 1.0))[:, None, None]
+    share = _per_triangle(above, potential) + _per_triangle(below, flux)
+    mixed = np.einsum("tbn,tbn->tn", potential, pairing @ flux)
+    share -= 2 * np.sign(mixed.sum()) * mixed
+    bracket = Bracket((lower + lower.T) / 2 * (1 - ALLOWANCE), (upper + upper.T) / 2 * (1 + ALLOWANCE)).checked()
+    return Fields(mesh, local, potential, flux, np.maximum(share, 0.0), bracket, int(dofs.max()) + 1)
+
+
+def _per_triangle(K: Floats, u: Floats) -> Floats:
+    """(T, N) energies of each field in each triangle."""
+    return np.einsum("tbn,tbn->tn", u, K @ u)
+
+
+def _energy(K: Floats, u: Floats) -> Floats:
+    """(N, N) the sum of u' K u over all triangles."""
+    n = u.shape[2]
+    return u.reshape(-1, n).T @ (K @ u).reshape(-1, n)
+
+
+def _fixed_potentials(mesh: Mesh, order: int, dofs: Ints) -> Ints:
+    """(M,) the conductor that fixes each unknown of the potential, or -1."""
+    conductor = np.full(int(dofs.max()) + 1, -1, dtype=np.int64)
+    p = order - 1
+    for local, (a, b) in enumerate(polynomials.EDGES):
+        on = mesh.edge_conductor[mesh.triangle_edges[:, local]]
+        rows = np.flatnonzero(on >= 0)
+        columns = [a, b, *range(3 + local * p, 3 + (local + 1) * p)]
+        conductor[dofs[rows][:, columns]] = on[rows, None]
+    engulfed = np.flatnonzero(mesh.engulfed_by >= 0)
+    conductor[dofs[engulfed]] = mesh.engulfed_by[engulfed, None]
+    return conductor
+
+
+def _potentials(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch) -> Floats:
+    """(T, b, N) the potentials of least energy."""
+    conductor = _fixed_potentials(mesh, order, dofs)
+    others = [k for k in range(len(mesh.layout.conductors)) if k != mesh.layout.reference]
+    values = (conductor[:, None] == np.array(others)).astype(float)
+    free = conductor < 0
+    number = np.where(free, np.cumsum(free) - 1, -1)
+    with watch.on("assembly"):
+        load = _scattered(dofs, -(K @ values[dofs]), len(conductor))
+        matrix = _assembled(number[dofs], K, int(free.sum()))
+    if matrix.shape[0]:
+        values[free] = _solved(matrix, load[free], watch)
+    return values[dofs]
+
+
+def _fluxes(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch) -> tuple[Floats, Floats]:
+    """(T, b, N) flux functions of unit charges, and the matrix P (N, N) of their energies: an upper bound of 1/C."""
+    with watch.on("assembly"):
+        tree = cut_tree(mesh)
+        jumps = _jumps(tree, order, len(dofs))
+        size = int(dofs.max()) + 1
+        load = _scattered(dofs, -(K @ jumps), size)
+        number = np.arange(size) - 1  # the first unknown is held at zero
+        matrix = _assembled(number[dofs], K, size - 1)
+    values = np.zeros((size, len(tree.cuts)))
+    values[1:] = _solved(matrix, load[1:], watch)
+    flux = (values[dofs] + jumps) @ tree.behind
+    return flux, _energy(K, flux)
+
+
+def _jumps(tree: CutTree, order: int, triangles: int) -> Floats:
+    """(T, b, N) the one-sided indicators of all cuts, on the edges' nodes."""
+    x, y = polynomials.nodes(order)[:, : skeleton_size(order)]
+    hats = np.stack([1 - x - y, x, y])
+    jumps = np.zeros((triangles, hats.shape[1], len(tree.cuts)))
+    for column, cut in enumerate(tree.cuts):
+        np.add.at(jumps[:, :, column], cut.triangle, hats[cut.corner])
+    return jumps
+
+
+def _scattered(dofs: Ints, local: Floats, size: int) -> Floats:
+    """(M, N) the sum of local vectors (T, b, N) over the triangles."""
+    flat = local.reshape(-1, local.shape[2])
+    return np.stack([np.bincount(dofs.ravel(), column, minlength=size) for column in flat.T], axis=1)
+
+
+def _assembled(number: Ints, K: Floats, size: int) -> sparse.csc_array:
+    """The global matrix over the unknowns with a number >= 0."""
+    b = number.shape[1]
+    rows, columns = np.repeat(number, b, axis=1).ravel(), np.tile(number, (1, b)).ravel()
+    used = (rows >= 0) & (columns >= 0)
+    entries = (K.ravel()[used], (rows[used].astype(np.int32), columns[used].astype(np.int32)))
+    return sparse.coo_array(entries, shape=(size, size)).tocsc()
+
+
+def _solved(matrix: sparse.csc_array, load: Floats, watch: Stopwatch) -> Floats:
+    with watch.on("factorisation"):
+        factor: SuperLU = splu(
+            matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.0, options={"SymmetricMode": True}
+        )
+    with watch.on("solves"):
+        return np.asarray(factor.solve(load))
