@@ -9,11 +9,14 @@ import numpy as np
 
 from nightcap.geometry import polynomials
 from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import CurvedTriangles, Flags, Triangulation
+from nightcap.geometry.errors import MeshError
+from nightcap.geometry.mesh import CurvedTriangles, Flags, Mesh, Triangulation
 from nightcap.geometry.polynomials import EDGES
 
 ORDER = 8
 """Order of the polynomial edges. A chord of a twelfth of a circle leaves the circle by 1e-13 of its radius."""
+EVENNESS = 0.03
+"""A first mesh is repaired until each Jacobian is proved to vary within a triangle by no more than this factor."""
 
 
 def curved_triangles(mesh: Triangulation, spans: Floats, bent: Flags) -> tuple[CurvedTriangles, Flags]:
@@ -36,12 +39,13 @@ def curved_triangles(mesh: Triangulation, spans: Floats, bent: Flags) -> tuple[C
     floor, stretch = jacobian_bounds(nodes, mesh.orientation[index])
     displacement = defect / stretch
     dilatation = 2 * displacement / np.maximum(1 - displacement, 1e-3)
-    return CurvedTriangles(index, nodes, dilatation), floor > 0
+    return CurvedTriangles(index, nodes, dilatation), floor > EVENNESS
 
 
 def _edge_offsets(mesh: Triangulation, spans: Floats) -> tuple[Floats, Floats]:
     """Distance of curve from chord at the inner Lobatto points (B + 1, ORDER - 1, 2), and a bound (B + 1,) on the
-    gradient of what interpolation leaves of it, m. The last row, of zeros, serves edges that lie on no curve."""
+    gradient of what interpolation, and snapping its ends to the layout's points, leave of it, m. The last row, of
+    zeros, serves edges that lie on no curve."""
     t = polynomials.lobatto(ORDER)[1:-1]
     offsets = np.zeros((len(spans) + 1, ORDER - 1, 2))
     defects = np.zeros(len(spans) + 1)
@@ -51,11 +55,12 @@ def _edge_offsets(mesh: Triangulation, spans: Floats) -> tuple[Floats, Floats]:
         if curve.curvature == 0.0:
             continue
         first, last = spans[rows].T
-        start, end = mesh.points[mesh.curve_edges[rows]].transpose(1, 0, 2)
-        chord = (1 - t)[:, None] * start[:, None] + t[:, None] * end[:, None]
+        ends = curve.at(spans[rows])
+        chord = (1 - t)[:, None] * ends[:, :1] + t[:, None] * ends[:, 1:]
         offsets[rows] = curve.at(first[:, None] + (last - first)[:, None] * t) - chord
+        snapped = np.hypot(*(mesh.points[mesh.curve_edges[rows]] - ends).transpose(2, 0, 1)).max(axis=1)
         turn = curve.length * abs(curve.curvature) * np.abs(last - first)
-        defects[rows] = _interpolation_defect(turn) / abs(curve.curvature)
+        defects[rows] = _interpolation_defect(turn) / abs(curve.curvature) + 2 * snapped
     return offsets, defects
 
 
@@ -95,29 +100,46 @@ def _interpolation_defect(turn: Floats) -> Floats:
     return first * turn ** (ORDER + 1) + second * turn ** (ORDER + 2)
 
 
-def jacobians(nodes: Floats, points: Floats) -> Floats:
-    """(2, 2, K, q) derivative a of coordinate d of each map (K, n, 2) at reference points (2, q).
+@cache
+def _gradients(degree: int) -> Floats:
+    """(2, n, q) gradients of the map's basis at ``polynomials.nodes(degree)``."""
+    return polynomials.lagrange(ORDER, polynomials.nodes(degree))[1]
+
+
+def jacobians(nodes: Floats, gradients: Floats) -> Floats:
+    """(2, 2, K, q) derivative a of coordinate d of each map (K, n, 2), from the basis' gradients (2, n, q).
 
     Affine part and bend apart: triangles much thinner than their distance from the origin keep their digits.
     """
     x, y = polynomials.nodes(ORDER)
     corners = nodes[:, :3] - nodes[:, :1]
     bends = nodes - nodes[:, :1] - np.einsum("kn,tkd->tnd", np.stack([1 - x - y, x, y]), corners)
-    _, gradients = polynomials.lagrange(ORDER, points)
     slopes = np.einsum("anq,tnd->adtq", gradients, bends, optimize=True)
     return np.asarray(slopes + corners[:, 1:].transpose(1, 2, 0)[..., None])
 
 
 def jacobian_bounds(nodes: Floats, orientation: Floats) -> tuple[Floats, Floats]:
-    """A lower bound of each map's Jacobian determinant (K,), m^2, and a low estimate of its least stretch (K,), m.
+    """A lower bound of each map's Jacobian determinant (K,), relative to its greatest value, and a low estimate of
+    the map's least stretch (K,), m.
 
     The bound is the least Bernstein coefficient of the determinant, a polynomial of degree 2 (ORDER - 1).
     """
     degree = 2 * (ORDER - 1)
-    dx, dy = jacobians(nodes, polynomials.nodes(degree))
+    dx, dy = jacobians(nodes, _gradients(degree))
     determinant = orientation[:, None] * (dx[0] * dy[1] - dx[1] * dy[0])
     floor = (determinant @ polynomials.bernstein_from_nodal(degree).T).min(axis=1, initial=np.inf)
-    rounding = 1e-10 * np.abs(determinant).max(axis=1, initial=0.0)
+    greatest = np.abs(determinant).max(axis=1, initial=1e-300)
     norm = np.sqrt((dx**2).sum(0) + (dy**2).sum(0))  # at least the greatest singular value
     stretch = (np.maximum(determinant, 0.0) / norm).min(axis=1, initial=np.inf) / 2
-    return floor - rounding, np.maximum(stretch, 1e-300)
+    return floor / greatest - 1e-10, np.maximum(stretch, 1e-300)
+
+
+def require_valid(mesh: Mesh) -> None:
+    """Raises MeshError unless every Jacobian is proved positive: on an invalid mesh the bounds would not hold."""
+    floor, _ = jacobian_bounds(mesh.curved.nodes, mesh.orientation[mesh.curved.index])
+    a, b, c = mesh.points[mesh.triangles].transpose(1, 2, 0)
+    u, v = b - a, c - a
+    straight = mesh.orientation * (u[0] * v[1] - u[1] * v[0])
+    straight[mesh.curved.index] = floor
+    if not (straight > 0).all():
+        raise MeshError(f"{np.count_nonzero(~(straight > 0))} triangles of the mesh are folded over")

@@ -56,33 +56,29 @@ def orthonormal(order: int, x: Floats) -> tuple[Floats, Floats]:
         q.append(a * s * q[m] - b * t**2 * before)
         qx.append(a * (2 * q[m] + s * qx[m]) - b * t**2 * before_x)
         qy.append(a * (q[m] + s * qy[m]) - b * (t**2 * before_y - 2 * t * before))
+    jacobi = [_jacobi(order - m, 2 * m + 1, 2 * y1 - 1) for m in range(order + 1)]
     values, slopes_x, slopes_y = [], [], []
     for degree in range(order + 1):
         for m in range(degree + 1):
             n = degree - m
-            jacobi, slope = _jacobi(n, 2 * m + 1, 2 * y1 - 1)
+            p, slope = (row[n] for row in jacobi[m])
             norm = np.sqrt((2 * m + 1) * (2 * m + 2 * n + 2))
-            values.append(norm * q[m] * jacobi)
-            slopes_x.append(norm * qx[m] * jacobi)
-            slopes_y.append(norm * (qy[m] * jacobi + q[m] * 2 * slope))
+            values.append(norm * q[m] * p)
+            slopes_x.append(norm * qx[m] * p)
+            slopes_y.append(norm * (qy[m] * p + q[m] * 2 * slope))
     return np.array(values), np.array([slopes_x, slopes_y])
 
 
-def _jacobi(n: int, a: int, z: Floats) -> tuple[Floats, Floats]:
-    """Jacobi polynomial P_n^(a,0) and its derivative, by the three-term recurrence."""
-    one, zero = np.ones_like(z), np.zeros_like(z)
-    p, d = [one], [zero]
-    for k in range(1, n + 1):
-        if k == 1:
-            p.append((a + (a + 2) * z) / 2)
-            d.append(np.full_like(z, (a + 2) / 2))
-            continue
+def _jacobi(highest: int, a: int, z: Floats) -> tuple[list[Floats], list[Floats]]:
+    """Jacobi polynomials P_n^(a,0) for n = 0 .. highest and their derivatives, by the three-term recurrence."""
+    p, d = [np.ones_like(z), (a + (a + 2) * z) / 2], [np.zeros_like(z), np.full_like(z, (a + 2) / 2)]
+    for k in range(2, highest + 1):
         c = 2 * k + a
         a1, a2 = 2 * k * (k + a) * (c - 2), (c - 1) * a * a
         a3, a4 = (c - 2) * (c - 1) * c, 2 * (k + a - 1) * (k - 1) * c
         p.append(((a2 + a3 * z) * p[k - 1] - a4 * p[k - 2]) / a1)
         d.append((a3 * p[k - 1] + (a2 + a3 * z) * d[k - 1] - a4 * d[k - 2]) / a1)
-    return p[n], d[n]
+    return p, d
 
 
 @cache

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from functools import cache
+
 import numpy as np
 
 from nightcap.geometry import curving, polynomials
@@ -91,25 +93,29 @@ def _split_maps(mesh: Mesh, triangles: Ints, parent: Ints, middle: Ints) -> tupl
     row[mesh.curved.index] = np.arange(len(mesh.curved.index))
     index = np.flatnonzero(row[parent] >= 0)
     row = row[parent[index]]
-    corners = _reference_corners(mesh, triangles[index], parent[index], middle)
-    x, y = polynomials.nodes(curving.ORDER)
-    places = np.einsum("nk,tkd->tdn", np.stack([1 - x - y, x, y], axis=1), corners)
-    nodes = np.empty((len(index), len(x), 2))
-    shapes, group = np.unique(corners.reshape(len(corners), 6), axis=0, return_inverse=True)
-    for k in range(len(shapes)):  # a dozen ways to lie in the parent
-        members = group.ravel() == k
-        values, _ = polynomials.lagrange(curving.ORDER, places[np.argmax(members)])
-        nodes[members] = np.einsum("nq,tnd->tqd", values, mesh.curved.nodes[row[members]])
+    places = _places_in_parent(mesh, triangles[index], parent[index], middle)
+    nodes = np.empty((len(index), polynomials.count(curving.ORDER), 2))
+    kinds, kind = np.unique(places @ [36, 6, 1], return_inverse=True)
+    for k, code in enumerate(kinds.tolist()):
+        members = kind == k
+        basis = _basis_in_parent(code // 36, code // 6 % 6, code % 6)
+        nodes[members] = np.einsum("nq,tnd->tqd", basis, mesh.curved.nodes[row[members]], optimize=True)
     return CurvedTriangles(index, nodes, mesh.curved.dilatation[row]), (triangles[index].ravel(), nodes[:, :3].reshape(-1, 2))
 
 
-def _reference_corners(mesh: Mesh, triangles: Ints, parent: Ints, middle: Ints) -> Floats:
-    """(C, 3, 2) where the vertices of each child lie in its parent's reference triangle."""
-    unit = np.array([[0.0, 0.0], [1.0, 0.0], [0.0, 1.0]])
-    halves = np.array([(unit[a] + unit[b]) / 2 for a, b in EDGES])
+def _places_in_parent(mesh: Mesh, triangles: Ints, parent: Ints, middle: Ints) -> Ints:
+    """(C, 3) which of its parent's three vertices and three edges' middles each child's vertices are."""
     known = np.concatenate([mesh.triangles[parent], middle[mesh.triangle_edges[parent]]], axis=1)
-    place = np.argmax(triangles[:, :, None] == known[:, None, :], axis=2)
-    return np.concatenate([unit, halves])[place]
+    return np.asarray(np.argmax(triangles[:, :, None] == known[:, None, :], axis=2))
+
+
+@cache
+def _basis_in_parent(*places: int) -> Floats:
+    """(n, n) the parent's basis at the nodes of a child whose vertices have these places."""
+    unit = np.array([[0.0, 0.0], [1.0, 0.0], [0.0, 1.0]])
+    corners = np.concatenate([unit, [(unit[a] + unit[b]) / 2 for a, b in EDGES]])[list(places)]
+    x, y = polynomials.nodes(curving.ORDER)
+    return polynomials.lagrange(curving.ORDER, corners.T @ np.stack([1 - x - y, x, y]))[0]
 
 
 def _split_curve_edges(mesh: Mesh, middle: Ints) -> tuple[Ints, Ints]:

@@ -21,6 +21,9 @@ from nightcap.solver.stiffness import bytes_needed
 from nightcap.solver.stopwatch import Stopwatch
 from nightcap.solver.system import solve_fields
 
+METRIC_PART = 1e-3
+"""Part of the accuracy that the approximation of curved triangles may take."""
+
 
 @dataclass(frozen=True)
 class Round:
@@ -84,7 +87,7 @@ def solve(
         if reason:
             break
         start = time.perf_counter()
-        fields = solve_fields(step.mesh, step.order, watch)
+        fields = solve_fields(step.mesh, step.order, METRIC_PART * accuracy, watch)
         reached = reduction.apply(fields.bracket).relative
         if reached <= accuracy:
             rounds.append(_round(fields, reached, "met", start))

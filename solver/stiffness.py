@@ -30,14 +30,17 @@ class Stiffness:
     """(T,) relative bound on what the approximations of a triangle's shape can change of its energy."""
 
 
-def stiffness(mesh: Mesh, order: int) -> Stiffness:
-    """Assembles and condenses the element matrices of all triangles."""
+def stiffness(mesh: Mesh, order: int, tolerance: float) -> Stiffness:
+    """Assembles and condenses the element matrices of all triangles.
+
+    tolerance : what approximating the metric of curved triangles may leave, relative.
+    """
     b = skeleton_size(order)
     n = polynomials.count(order)
     skeleton = np.empty((len(mesh.triangles), b, b))
     interior = np.empty((len(mesh.triangles), n - b, b))
     dilatation = np.zeros(len(mesh.triangles))
-    for metric in metrics(mesh):
+    for metric in metrics(mesh, tolerance):
         dilatation[metric.index] = metric.dilatation
         for start in range(0, len(metric.index), BATCH):
             rows = slice(start, start + BATCH)

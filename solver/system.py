@@ -9,36 +9,60 @@ from skfem.assembly import Dofs
 
 from nightcap.geometry import polynomials
 from nightcap.geometry.curves import Floats
+from nightcap.geometry.curving import require_valid
 from nightcap.geometry.mesh import Ints, Mesh
 from nightcap.solver.bracket import Bracket
 from nightcap.solver.cuts import CutTree, cut_tree
 from nightcap.solver.element import ElementTriLagrange, skeleton_size
 from nightcap.solver.fields import Fields
-from nightcap.solver.stiffness import edge_pairing, stiffness
+from nightcap.solver.stiffness import Stiffness, edge_pairing, stiffness
 from nightcap.solver.stopwatch import Stopwatch
 
 ALLOWANCE = 1e-12
 """What rounding may do to a bound, relative; both are widened by it."""
 
 
-def solve_fields(mesh: Mesh, order: int, watch: Stopwatch) -> Fields:
-    """Solves both problems for all conductors on one mesh."""
-    with watch.on("assembly"):
-        local = stiffness(mesh, order)
-        dofs = Dofs(mesh.topology, ElementTriLagrange(order)).element_dofs[: skeleton_size(order)].T.astype(np.int64)
-        above = local.skeleton * (mesh.greatest_permittivity * (1 + local.dilatation))[:, None, None]
-        below = local.skeleton * ((1 + local.dilatation) / mesh.least_permittivity)[:, None, None]
+def solve_fields(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> Fields:
+    """Solves both problems for all conductors on one mesh.
+
+    tolerance : what approximating the metric of curved triangles may leave, relative; it widens the bracket.
+    Raises MeshError for a mesh with folded triangles, BracketError if the bounds contradict each other.
+    """
+    local, dofs = _local(mesh, order, tolerance, watch)
+    above, below = _weighted(mesh, local)
     potential = _potentials(mesh, order, dofs, above, watch)
     upper = _energy(above, potential)
     flux, P = _fluxes(mesh, order, dofs, below, watch)
     lower = np.linalg.inv(P)
     flux = flux @ lower
     pairing = edge_pairing(order) * (mesh.orientation * np.where(mesh.far, -1.0, 1.0))[:, None, None]
-    share = _per_triangle(above, potential) + _per_triangle(below, flux)
     mixed = np.einsum("tbn,tbn->tn", potential, pairing @ flux)
-    share -= 2 * np.sign(mixed.sum()) * mixed
+    share = _per_triangle(above, potential) + _per_triangle(below, flux) - 2 * np.sign(mixed.sum()) * mixed
     bracket = Bracket((lower + lower.T) / 2 * (1 - ALLOWANCE), (upper + upper.T) / 2 * (1 + ALLOWANCE)).checked()
     return Fields(mesh, local, potential, flux, np.maximum(share, 0.0), bracket, int(dofs.max()) + 1)
+
+
+def solve_potentials(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> tuple[Floats, Floats]:
+    """The potentials alone: their edge values (T, b, N), V, and the upper bound (N, N) relative to eps0."""
+    local, dofs = _local(mesh, order, tolerance, watch)
+    above, _ = _weighted(mesh, local)
+    potential = _potentials(mesh, order, dofs, above, watch)
+    return potential, _energy(above, potential)
+
+
+def _local(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> tuple[Stiffness, Ints]:
+    """Element matrices, and the numbers (T, b) of each triangle's unknowns."""
+    with watch.on("assembly"):
+        require_valid(mesh)
+        numbering = Dofs(mesh.topology, ElementTriLagrange(order)).element_dofs
+        return stiffness(mesh, order, tolerance), numbering[: skeleton_size(order)].T.astype(np.int64)
+
+
+def _weighted(mesh: Mesh, local: Stiffness) -> tuple[Floats, Floats]:
+    """Element matrices (T, b, b) with the greatest permittivity, and with the inverse of the least."""
+    above = mesh.greatest_permittivity * (1 + local.dilatation)
+    below = (1 + local.dilatation) / mesh.least_permittivity
+    return local.skeleton * above[:, None, None], local.skeleton * below[:, None, None]
 
 
 def _per_triangle(K: Floats, u: Floats) -> Floats:
