@@ -135,5 +135,3 @@ def _angle_at(flat: Triangulation, vertex: int, edge: int, other: int) -> float:
     at = flat.points[vertex]
     u, v = (flat.points[flat.edges[e].sum() - vertex] - at for e in (edge, other))
     return float(abs(np.arctan2(u[0] * v[1] - u[1] * v[0], u @ v)))
-
-

@@ -59,7 +59,7 @@ class Segment:
 
     def at(self, t: Floats) -> Floats:
         t = np.asarray(t, dtype=float)[..., None]
-        return (1.0 - t) * np.asarray(self.start) + t * np.asarray(self.end)
+        return np.asarray((1.0 - t) * np.asarray(self.start) + t * np.asarray(self.end))
 
     def tangent(self, t: Floats) -> Floats:
         direction = (np.asarray(self.end) - np.asarray(self.start)) / self.length

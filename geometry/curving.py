@@ -43,9 +43,11 @@ def curved_triangles(mesh: Triangulation, spans: Floats, bent: Flags) -> tuple[C
 
 
 def _edge_offsets(mesh: Triangulation, spans: Floats) -> tuple[Floats, Floats]:
-    """Distance of curve from chord at the inner Lobatto points (B + 1, ORDER - 1, 2), and a bound (B + 1,) on the
-    gradient of what interpolation, and snapping its ends to the layout's points, leave of it, m. The last row, of
-    zeros, serves edges that lie on no curve."""
+    """Distance of curve from chord at the inner Lobatto points (B + 1, ORDER - 1, 2), and what is left out of it.
+
+    That is a bound (B + 1,) on the gradient, m, of the errors of interpolation and of snapping the ends to the layout's
+    points. The last rows, of zeros, serve edges that lie on no curve.
+    """
     t = polynomials.lobatto(ORDER)[1:-1]
     offsets = np.zeros((len(spans) + 1, ORDER - 1, 2))
     defects = np.zeros(len(spans) + 1)
@@ -76,7 +78,7 @@ def _blending(local: int) -> Floats:
         np.prod([(t - other) / (own - other) for other in inner if other != own], axis=0) / (own * (1 - own))
         for own in inner
     ]
-    return (barycentric[a] * barycentric[b])[:, None] * np.stack(lagrange, axis=1)
+    return np.asarray((barycentric[a] * barycentric[b])[:, None] * np.stack(lagrange, axis=1))
 
 
 @cache

@@ -3,12 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TypeVar
+
+import numpy as np
+from numpy.typing import NDArray
 
 from nightcap.geometry.case import Material
 from nightcap.geometry.curves import Curve, Floats
 
+Numbers = TypeVar("Numbers", int, NDArray[np.int64])
 
-def conductor_side(conductor: int) -> int:
+
+def conductor_side(conductor: Numbers) -> Numbers:
     """The side number that stands for a conductor; its own inverse."""
     return -1 - conductor
 

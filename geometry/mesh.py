@@ -69,8 +69,8 @@ class Triangulation:
     @cached_property
     def edge_conductor(self) -> Ints:
         """(E,) the conductor on whose surface each edge lies, or -1."""
-        sides = np.array([piece.sides for piece in self.layout.pieces])
-        conductor = np.maximum(np.max(conductor_side(sides), axis=1), -1)
+        lowest = np.array([min(piece.sides) for piece in self.layout.pieces])
+        conductor = np.where(lowest < 0, conductor_side(lowest), -1)
         return np.append(conductor[self.curve_piece], -1)[self.edge_rank]
 
     @cached_property
@@ -87,7 +87,7 @@ class Triangulation:
     def edge_lengths(self) -> Floats:
         """(E,) lengths of the chords, m."""
         a, b = self.points[self.edges].transpose(1, 0, 2)
-        return np.hypot(*(b - a).T)
+        return np.asarray(np.hypot(*(b - a).T))
 
 
 @dataclass(frozen=True, eq=False)

@@ -89,7 +89,8 @@ def quadrature(degree: int) -> tuple[Floats, Floats]:
     b, weight_b = roots_jacobi(n, 1, 0)
     y = (1 + b)[:, None] / 2 * np.ones(n)
     x = (1 + a) / 2 * (1 - y)
-    return np.stack([x.ravel(), y.ravel()]), np.outer(weight_b, weight_a).ravel() / 8
+    weights = np.outer(weight_b, weight_a).ravel() / 8
+    return np.array([x.ravel(), y.ravel()], dtype=np.float64), np.asarray(weights, dtype=np.float64)
 
 
 @cache

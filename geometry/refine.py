@@ -100,7 +100,8 @@ def _split_maps(mesh: Mesh, triangles: Ints, parent: Ints, middle: Ints) -> tupl
         members = kind == k
         basis = _basis_in_parent(code // 36, code // 6 % 6, code % 6)
         nodes[members] = np.einsum("nq,tnd->tqd", basis, mesh.curved.nodes[row[members]], optimize=True)
-    return CurvedTriangles(index, nodes, mesh.curved.dilatation[row]), (triangles[index].ravel(), nodes[:, :3].reshape(-1, 2))
+    moved = (triangles[index].ravel(), nodes[:, :3].reshape(-1, 2))
+    return CurvedTriangles(index, nodes, mesh.curved.dilatation[row]), moved
 
 
 def _places_in_parent(mesh: Mesh, triangles: Ints, parent: Ints, middle: Ints) -> Ints:

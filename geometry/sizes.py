@@ -88,11 +88,11 @@ class _Sizes:
 
     def points(self, owner: Ints, t: Floats) -> Floats:
         """(n, 2) points at parameters t (n,) of pieces owner (n,)."""
-        centre, radius, angle, sweep = self.arcs[owner, :2], self.arcs[owner, 2], self.arcs[owner, 3], self.arcs[owner, 4]
+        centre, (radius, angle, sweep) = self.arcs[owner, :2], self.arcs[owner, 2:].T
         start, end = self.ends[owner].transpose(1, 0, 2)
         phi = angle + t * sweep
         on_arc = centre + radius[:, None] * np.stack([np.cos(phi), np.sin(phi)], axis=1)
-        return np.where((radius > 0)[:, None], on_arc, start + t[:, None] * (end - start))
+        return np.asarray(np.where((radius > 0)[:, None], on_arc, start + t[:, None] * (end - start)))
 
     def at(self, owner: Ints, t: Floats) -> Floats:
         """(n,) edge lengths, m."""
@@ -116,12 +116,12 @@ class _Sizes:
         along = np.clip(((x - start) * chord).sum(1) / np.maximum((chord**2).sum(1), 1e-300), 0.0, 1.0)
         to_line = np.hypot(*(x - start - along[:, None] * chord).T)
         to_ends = np.minimum(np.hypot(*(x - start).T), np.hypot(*(x - end).T))
-        centre, radius, angle, sweep = self.arcs[other, :2], self.arcs[other, 2], self.arcs[other, 3], self.arcs[other, 4]
+        centre, (radius, angle, sweep) = self.arcs[other, :2], self.arcs[other, 2:].T
         away = x - centre
         turned = np.sign(sweep) * (np.arctan2(away[:, 1], away[:, 0]) - angle)
         within = np.mod(turned, math.tau) <= np.abs(sweep)
         to_arc = np.where(within, np.abs(np.hypot(*away.T) - radius), to_ends)
-        return np.where(radius > 0, to_arc, to_line)
+        return np.asarray(np.where(radius > 0, to_arc, to_line))
 
     def cells(self) -> tuple[Ints, Floats, Floats]:
         """Intervals of the pieces, halved until each is no longer than the edges asked for in its middle."""

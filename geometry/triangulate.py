@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from contextlib import contextmanager
+from itertools import pairwise
 from types import ModuleType
 
 import numpy as np
@@ -83,7 +84,7 @@ def _describe(gmsh: ModuleType, layout: Layout, points: Floats, along: list[Ints
     tag = 0
     for vertices in (along_piece.tolist() for along_piece in along):
         lines.append([])
-        for start, end in zip(vertices[:-1], vertices[1:], strict=True):
+        for start, end in pairwise(vertices):
             tag = geo.addLine(start + 1, end + 1)
             geo.mesh.setTransfiniteCurve(tag, 2)
             lines[-1].append(tag)

@@ -11,7 +11,7 @@ from nightcap.geometry.curves import Floats
 from nightcap.geometry.curving import curved_triangles
 from nightcap.geometry.errors import MeshError
 from nightcap.geometry.layout import Layout
-from nightcap.geometry.mesh import Flags, Ints, Mesh, Triangulation, ascending
+from nightcap.geometry.mesh import Ints, Mesh, Triangulation, ascending
 from nightcap.geometry.sizes import Grading, divide_pieces
 from nightcap.geometry.triangulate import triangulate
 
@@ -35,8 +35,13 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
         if offenders.size == 0:
             low, high = lenses.permittivity_range(flat)
             plain = {f.name: getattr(flat, f.name) for f in fields(Triangulation)}
-            return Mesh(**plain, curved=curved, least_permittivity=low, greatest_permittivity=high,
-                        engulfed_by=lenses.conductor(flat))
+            return Mesh(
+                **plain,
+                curved=curved,
+                least_permittivity=low,
+                greatest_permittivity=high,
+                engulfed_by=lenses.conductor(flat),
+            )
         divisions = _halved(divisions, flat, spans, offenders)
     raise MeshError("no valid mesh found: two curves come too close to each other")
 

@@ -55,10 +55,8 @@ def relative_share(fields: Fields) -> Floats:
 
 def _blamed(fields: Fields, accuracy: float) -> Flags:
     share = relative_share(fields)
-    blamed = share > accuracy / (2 * len(share))
-    if not blamed.any():
-        blamed = share >= share.max() / 2
-    return np.asarray(blamed)
+    permitted = min(accuracy / (2 * len(share)), float(share.max()) / 2)
+    return np.asarray(share > permitted, dtype=np.bool_)
 
 
 def _split(mesh: Mesh, blamed: Flags) -> Mesh:

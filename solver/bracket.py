@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import BracketError
@@ -92,5 +93,5 @@ def _schur(A: Floats, rows: Sequence[int]) -> Floats:
     return _symmetric(A[np.ix_(kept, kept)] - A[np.ix_(kept, gone)] @ inner)
 
 
-def _symmetric(A: Floats) -> Floats:
-    return (A + A.T) / 2
+def _symmetric(A: NDArray[np.floating]) -> Floats:
+    return np.asarray((A + A.T) / 2, dtype=np.float64)

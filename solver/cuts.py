@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from scipy import sparse
@@ -92,7 +93,7 @@ def _usable_edges(mesh: Mesh, node: Ints) -> tuple[Ints, Floats]:
 def _real_vertices(walk: list[int], node: Ints, edges: Ints, keys: Ints, size: int) -> Ints:
     """The mesh vertices along a walk over graph nodes."""
     vertices: list[int] = []
-    for a, b in zip(walk[:-1], walk[1:], strict=True):
+    for a, b in pairwise(walk):
         edge = edges[np.searchsorted(keys, min(a, b) * size + max(a, b))]
         start, end = edge if node[edge[0]] == a else edge[::-1]
         vertices += [int(start), int(end)] if not vertices else [int(end)]

@@ -9,7 +9,7 @@ from nightcap.geometry import polynomials
 from nightcap.geometry.curves import Floats
 
 
-class ElementTriLagrange(ElementH1):
+class ElementTriLagrange(ElementH1):  # type: ignore[misc]  # scikit-fem ships no types
     """Lagrange triangle of order p with Gauss-Lobatto nodes on its edges.
 
     The nodes of an edge run from its lower to its higher vertex, so triangles must be stored with ascending vertices.
@@ -34,5 +34,3 @@ class ElementTriLagrange(ElementH1):
 def skeleton_size(order: int) -> int:
     """Number of an element's basis functions that live on its edges; they come first."""
     return 3 * order
-
-

@@ -79,7 +79,7 @@ class Fields:
         places = np.einsum("qk,tkd->tqd", barycentric, self.mesh.points[self.mesh.triangles])
         values, _ = polynomials.lagrange(curving.ORDER, lattice)
         places[self.mesh.curved.index] = np.einsum("nq,tnd->tqd", values, self.mesh.curved.nodes)
-        return places
+        return np.asarray(places)
 
 
 def _lattice(n: int) -> tuple[Floats, Ints]:

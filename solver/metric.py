@@ -77,17 +77,19 @@ def _rounding(mesh: Mesh) -> Floats:
 def _tensor(dx: Floats, dy: Floats) -> Floats:
     """G_xx, G_xy, G_yy (n, 3) of columns dx, dy (2, n) of the Jacobian."""
     determinant = np.abs(dx[0] * dy[1] - dx[1] * dy[0])
-    return np.stack([(dy * dy).sum(0), -(dx * dy).sum(0), (dx * dx).sum(0)], axis=1) / determinant[:, None]
+    entries = [(dy * dy).sum(0), -(dx * dy).sum(0), (dx * dx).sum(0)]
+    return np.asarray(np.stack(entries, axis=1) / determinant[:, None])
 
 
 @cache
 def _tables(degree: int) -> tuple[Floats, Floats, Floats]:
-    """Gradients of the maps' basis; the projection from values at the first of them; the basis at the others, where it is checked."""
+    """Gradients of the maps' basis at projection and check points; the projection; the basis at the check points."""
     points, weights = polynomials.quadrature(2 * degree + 2)
     checks = polynomials.nodes(14)
     basis, _ = polynomials.orthonormal(degree, points)
     _, gradients = polynomials.lagrange(curving.ORDER, np.concatenate([points, checks], axis=1))
-    return gradients, (basis * weights).T, polynomials.orthonormal(degree, checks)[0]
+    projection = np.asarray((basis * weights).T)
+    return gradients, projection, polynomials.orthonormal(degree, checks)[0]
 
 
 def _projected(nodes: Floats, degree: int) -> tuple[Floats, Floats]:

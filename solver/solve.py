@@ -6,7 +6,6 @@ import time
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
-
 from nightcap.geometry.case import Limits
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.errors import LimitError
@@ -132,5 +131,3 @@ def _limit_in_the_way(step: Step, limits: Limits, rounds: list[Round], spent: fl
     if spent > limits.time:
         return f"about {spent:.2g} s would exceed the limit of {limits.time:.2g} s"
     return ""
-
-

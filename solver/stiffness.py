@@ -45,7 +45,7 @@ def stiffness(mesh: Mesh, order: int, tolerance: float) -> Stiffness:
         for start in range(0, len(metric.index), BATCH):
             rows = slice(start, start + BATCH)
             K = element_matrices(metric, order, rows)
-            lift = -np.linalg.solve(K[:, b:, b:], K[:, b:, :b]) if n > b else np.empty((len(K), 0, b))
+            lift = np.asarray(-np.linalg.solve(K[:, b:, b:], K[:, b:, :b]), dtype=np.float64)
             skeleton[metric.index[rows]] = _condensed(K, lift)
             interior[metric.index[rows]] = lift
     return Stiffness(order, skeleton, interior, dilatation)
@@ -111,5 +111,3 @@ def edge_pairing(order: int) -> Floats:
         along = np.einsum("a,anq->nq", direction, gradients)
         total += ((values * weights) @ along.T)[:b, :b]
     return total
-
-

@@ -67,7 +67,7 @@ def _weighted(mesh: Mesh, local: Stiffness) -> tuple[Floats, Floats]:
 
 def _per_triangle(K: Floats, u: Floats) -> Floats:
     """(T, N) energies of each field in each triangle."""
-    return np.einsum("tbn,tbn->tn", u, K @ u)
+    return np.asarray(np.einsum("tbn,tbn->tn", u, K @ u))
 
 
 def _energy(K: Floats, u: Floats) -> Floats:
@@ -102,7 +102,7 @@ def _potentials(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch)
         matrix = _assembled(number[dofs], K, int(free.sum()))
     if matrix.shape[0]:
         values[free] = _solved(matrix, load[free], watch)
-    return values[dofs]
+    return np.asarray(values[dofs])
 
 
 def _fluxes(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch) -> tuple[Floats, Floats]:
