@@ -122,7 +122,7 @@ def _limit_in_the_way(step: Step, limits: Limits, rounds: list[Round], spent: fl
     triangles = len(step.mesh.triangles)
     if triangles > limits.triangles:
         return f"{triangles} triangles would exceed the limit of {limits.triangles}"
-    memory = bytes_needed(triangles, step.order)
+    memory = bytes_needed(triangles, step.order, len(step.mesh.layout.conductors) - 1)
     if memory > limits.memory:
         return f"about {memory / 1e9:.2g} GB would exceed the limit of {limits.memory / 1e9:.2g} GB"
     if rounds:
