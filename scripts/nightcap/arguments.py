@@ -1,0 +1,107 @@
+"""The words of the command line. Imports nothing heavy: ``nightcap --help`` must answer at once."""
+
+from __future__ import annotations
+
+import argparse
+import math
+from pathlib import Path
+
+import nightcap
+
+TOP_EXAMPLES = """\
+examples:
+  nightcap check cases/                     read every case file below cases/, solve nothing
+  nightcap run pair.yaml --out results      solve one case
+  nightcap run cases/ --out results         solve every case file below cases/
+
+exit codes: 0 all cases met, 1 some case was not met or failed, 2 nothing could be run, 130 interrupted.
+'nightcap run --help' and 'nightcap check --help' tell more.
+"""
+RUN_EXAMPLES = """\
+examples:
+  nightcap run pair.yaml --out results
+      writes results/pair/result.json, result.csv and picture.png
+  nightcap run cases/ --out results --jobs 4
+      every *.yaml and *.yml below cases/, four at a time; cases/tail/pair.yaml
+      goes to results/tail/pair/
+  nightcap run cases/ --out quick --accuracy "1 %" --no-pictures
+      a first look: a wider bracket than the files ask, numbers only
+"""
+CHECK_EXAMPLES = """\
+examples:
+  nightcap check pair.yaml      says what it understood, or every mistake with its line
+  nightcap check cases/         the same for every *.yaml and *.yml below cases/
+"""
+
+
+def build_parser() -> argparse.ArgumentParser:
+    """The parser of the whole command line."""
+    parser = argparse.ArgumentParser(
+        prog="nightcap",
+        description=nightcap.__doc__,
+        epilog=TOP_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
+    parser.add_argument("--version", action="version", version=f"nightcap {nightcap.__version__}")
+    commands = parser.add_subparsers(dest="command", metavar="COMMAND", required=True)
+    _add_run(commands)
+    _add_check(commands)
+    return parser
+
+
+def _add_run(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    run = commands.add_parser(
+        "run",
+        help="solve cases and write their results",
+        description="Solves every case, each in a worker process of its own; one that fails never stops the others.",
+        epilog=RUN_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
+    _add_paths(run)
+    run.add_argument("--out", required=True, type=Path, metavar="DIR", help="folder that receives the results")
+    run.add_argument(
+        "--accuracy",
+        type=accuracy,
+        metavar="X",
+        help="half-width of the bracket relative to sqrt(C_ii C_jj), for all cases instead of"
+        " what their files ask: 1e-4 or '0.01 %%'",
+    )
+    run.add_argument("--jobs", type=count, metavar="N", help="cases solved at a time (default: one per processor)")
+    run.add_argument("--no-pictures", action="store_true", help="do not draw picture.png")
+
+
+def _add_check(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    check = commands.add_parser(
+        "check",
+        help="read cases and say what was understood, solve nothing",
+        description="Reads every case and resolves its layout, prints what was understood, and solves nothing.",
+        epilog=CHECK_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
+    _add_paths(check)
+
+
+def _add_paths(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("paths", nargs="+", metavar="PATH", help="case file, or folder searched for *.yaml and *.yml")
+
+
+def accuracy(text: str) -> float:
+    """A fraction between 0 and 1, written as such or in per cent."""
+    number = text.strip()
+    scale = 1.0
+    if number.endswith("%"):
+        number, scale = number[:-1], 0.01
+    try:
+        value = float(number) * scale
+    except ValueError:
+        value = math.nan
+    if not 0.0 < value < 1.0:
+        raise argparse.ArgumentTypeError(f"{text!r} is not between 0 and 1 (examples: 1e-4, '0.01 %')")
+    return value
+
+
+def count(text: str) -> int:
+    """A whole number, at least 1."""
+    if not text.isascii() or not text.isdigit() or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"{text!r} is not a whole number of at least 1")
+    return int(text)

@@ -1,0 +1,80 @@
+"""What a picture is drawn from, and the part of the plane that it shows."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from nightcap.geometry.case import Case, GroundPlane, Shield
+from nightcap.geometry.curves import Floats
+from nightcap.geometry.layout import Layout
+from nightcap.geometry.shapes import Shape
+from nightcap.outputs.outlines import points_along
+
+MARGIN = {Shield: 0.08, GroundPlane: 0.35}
+"""Of the size of what is drawn, around it; open space gets the last."""
+OPEN_MARGIN = 0.45
+
+
+@dataclass(frozen=True, eq=False)
+class Drawing:
+    """A solved layout."""
+
+    case: Case
+    layout: Layout
+    conductors: tuple[str, ...]
+    """Names of the rows of the sampled fields."""
+    fields: Any
+    """nightcap.solver.fields: has sample(subdivisions)."""
+
+
+@dataclass(frozen=True)
+class View:
+    """A rectangle of the plane, m."""
+
+    left: float
+    bottom: float
+    right: float
+    top: float
+
+    @property
+    def width(self) -> float:
+        return self.right - self.left
+
+    @property
+    def height(self) -> float:
+        return self.top - self.bottom
+
+    def sees(self, low: Floats, high: Floats) -> Any:
+        """Which boxes, from low (n, 2) to high (n, 2), reach into the view: (n,) bool."""
+        return (
+            (high[:, 0] >= self.left)
+            & (low[:, 0] <= self.right)
+            & (high[:, 1] >= self.bottom)
+            & (low[:, 1] <= self.top)
+        )
+
+
+def view_of(case: Case) -> View:
+    """The drawn shapes with a margin; the plane below them too, where there is one."""
+    outlines = [points_along(curve) for shape in _shapes(case) for curve in shape.outline()]
+    points = np.concatenate(outlines)
+    low, high = points.min(axis=0), points.max(axis=0)
+    if isinstance(case.boundary, GroundPlane):
+        low[1] = min(low[1], case.boundary.at)
+    margin = MARGIN.get(type(case.boundary), OPEN_MARGIN) * float((high - low).max())
+    bottom = low[1] - (0.2 * margin if isinstance(case.boundary, GroundPlane) else margin)
+    return View(float(low[0] - margin), float(bottom), float(high[0] + margin), float(high[1] + margin))
+
+
+def _shapes(case: Case) -> Iterable[Shape]:
+    if isinstance(case.boundary, Shield):
+        yield case.boundary.shape
+        return
+    for conductor in case.conductors:
+        yield conductor.shape.grown(sum(coating.thickness for coating in conductor.coatings))
+    for dielectric in case.dielectrics:
+        yield dielectric.shape

@@ -1,0 +1,135 @@
+"""What a result looks like on screen, in at most 80 columns."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Iterator, Sequence
+
+import numpy as np
+
+from nightcap.digits import bracketed, grouped
+from nightcap.geometry.curves import Floats
+from nightcap.result import FAILED, MET, Capacitance, MutualCapacitance, Result
+
+WIDTH = 80
+MARGIN = "  "
+WHOLE_MATRIX = 12
+"""Up to so many conductors a matrix is printed entry by entry."""
+PICO = 1e12
+STATUS = {MET: "met", "not_met": "not met", FAILED: "failed"}
+
+
+def result_lines(result: Result) -> Iterator[str]:
+    """The block that is printed when a case is finished."""
+    yield f"{result.case}: {STATUS[result.status]}{f' ({result.reason})' if result.reason else ''}"
+    yield from _wrapped(result.title)
+    C, mutual = result.capacitance, result.mutual  # noqa: N806 - the letter of the formula
+    if result.status != FAILED and C is not None and mutual is not None:
+        yield from _wrapped(_how_solved(result))
+        if len(C.conductors) <= WHOLE_MATRIX:
+            yield from _whole_matrices(C, mutual, result.reference)
+        else:
+            yield from _each_conductor(C, mutual, result.reference)
+    if result.comparison is not None:
+        yield from _wrapped(str(result.comparison))
+    for warning in result.warnings:
+        yield from _wrapped(f"warning: {warning}")
+
+
+def summary_lines(results: Sequence[Result]) -> Iterator[str]:
+    """One line per case, and how many of each kind."""
+    width = min(max(len(result.case) for result in results), WIDTH - 55)
+    yield f"{'case':{width}}  {'requested':>9}  {'reached':>8}  {'s':>6}  status"
+    for result in results:
+        requested, reached = (_small(number) for number in (result.requested, result.reached))
+        seconds = result.seconds.get("total", 0.0)
+        status = STATUS[result.status] + ("" if _as_expected(result) else ", not as expected")
+        yield f"{_tail(result.case, width):{width}}  {requested:>9}  {reached:>8}  {seconds:6.2f}  {status}"
+    yield summary_line(results)
+
+
+def summary_line(results: Sequence[Result]) -> str:
+    """How many cases ended how."""
+    counts = [f"{sum(r.status == status for r in results)} {text}" for status, text in STATUS.items()]
+    disagreeing = sum(not _as_expected(r) for r in results)
+    extra = f"; {disagreeing} not as expected" if disagreeing else ""
+    return f"{len(results)} {'case' if len(results) == 1 else 'cases'}: {', '.join(counts)}{extra}"
+
+
+def _as_expected(result: Result) -> bool:
+    return result.comparison is None or result.comparison.agrees
+
+
+def _how_solved(result: Result) -> str:
+    parts = [
+        f"reference {result.reference}",
+        f"accuracy {_small(result.requested)} requested, {_small(result.reached)} reached",
+    ]
+    if result.mesh:
+        mesh = result.mesh
+        parts.append(f"{mesh.rounds} rounds, order {mesh.order}, {grouped(mesh.triangles)} triangles")
+        parts.append(f"{grouped(mesh.unknowns)} unknowns")
+    parts.append(f"{result.seconds.get('total', 0.0):.2f} s")
+    return "; ".join(parts)
+
+
+def _whole_matrices(C: Capacitance, mutual: MutualCapacitance, reference: str | None) -> Iterator[str]:  # noqa: N803
+    yield f"{MARGIN}Maxwell capacitance, pF/m"
+    yield from _matrix(C.conductors, _entries(C.value, C.half_width))
+    yield f"{MARGIN}Mutual capacitance, pF/m; on the diagonal to the reference, {reference}"
+    yield from _matrix(C.conductors, _entries(mutual.value, mutual.half_width))
+
+
+def _entries(value: Floats, half_width: Floats) -> list[list[str]]:
+    scaled = zip((value * PICO).tolist(), (half_width * PICO).tolist(), strict=True)
+    return [[bracketed(v, w) for v, w in zip(*rows, strict=True)] for rows in scaled]
+
+
+def _matrix(names: Sequence[str], entries: Sequence[Sequence[str]]) -> Iterator[str]:
+    """Rows and columns with their names, in as many blocks of columns as the width of the screen asks."""
+    names = [_clipped(name, 16) for name in names]
+    label = max(map(len, names))
+    width = max(*(len(entry) for row in entries for entry in row), *map(len, names))
+    fit = max((WIDTH - 2 * len(MARGIN) - label) // (width + 2), 1)
+    for first in range(0, len(names), fit):
+        block = slice(first, first + fit)
+        yield _row("", names[block], label, width)
+        for name, row in zip(names, entries, strict=True):
+            yield _row(name, row[block], label, width)
+
+
+def _row(name: str, entries: Sequence[str], label: int, width: int) -> str:
+    cells = "".join(f"  {entry:>{width}}" for entry in entries)
+    return f"{2 * MARGIN}{name:{label}}{cells}".rstrip()
+
+
+def _each_conductor(C: Capacitance, mutual: MutualCapacitance, reference: str | None) -> Iterator[str]:  # noqa: N803
+    """The long form of many conductors: each with its own, its reference's and its greatest mutual capacitance."""
+    n = len(C.conductors)
+    yield f"{MARGIN}pF/m, {n} conductors; all {n * n} entries are in result.csv"
+    own, pairs = _entries(C.value, C.half_width), _entries(mutual.value, mutual.half_width)
+    between = mutual.value - np.diag(np.full(n, np.inf))
+    nearest = between.argmax(axis=1).tolist()
+    header = ("C_ii", f"to {_clipped(reference or '', 12)}", "greatest mutual", "with")
+    lines = [(own[i][i], pairs[i][i], pairs[i][k], _clipped(C.conductors[k], 12)) for i, k in enumerate(nearest)]
+    label = max(len(_clipped(name, 12)) for name in C.conductors)
+    width = max(len(cell) for line in (header, *lines) for cell in line)
+    yield _row("", header, label, width)
+    for name, line in zip(C.conductors, lines, strict=True):
+        yield _row(_clipped(name, 12), line, label, width)
+
+
+def _small(number: float | None) -> str:
+    return "-" if number is None else f"{number:.1e}"
+
+
+def _clipped(name: str, width: int) -> str:
+    return name if len(name) <= width else f"{name[: width - 2]}.."
+
+
+def _tail(path: str, width: int) -> str:
+    return path if len(path) <= width else f"..{path[2 - width :]}"
+
+
+def _wrapped(text: str) -> list[str]:
+    return textwrap.wrap(text, WIDTH, initial_indent=MARGIN, subsequent_indent=2 * MARGIN)
