@@ -10,6 +10,7 @@ import skfem
 from numpy.typing import NDArray
 
 from nightcap.geometry.curves import Floats
+from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, conductor_side
 
 Ints = NDArray[np.int64]
@@ -116,6 +117,13 @@ class Mesh(Triangulation):
     engulfed_by: Ints
     """(T,) the conductor of which such a lens reaches into the triangle, or -1. For an upper bound of capacitance the
     whole triangle counts as that conductor, for a lower bound none of it."""
+    grading: Grading
+    """What the first mesh was graded to."""
+
+    @property
+    def has_lens(self) -> Flags:
+        """(T,) True where a curve is replaced by its chord: only a first mesh graded further makes these better."""
+        return (self.least_permittivity < self.greatest_permittivity) | (self.engulfed_by >= 0)
 
 
 def ascending(triangles: Ints) -> tuple[Ints, Floats]:

@@ -43,6 +43,7 @@ def refine(mesh: Mesh, marked: Flags) -> Mesh:
         least_permittivity=mesh.least_permittivity[parent],
         greatest_permittivity=mesh.greatest_permittivity[parent],
         engulfed_by=mesh.engulfed_by[parent],
+        grading=mesh.grading,
     )
 
 

@@ -3,44 +3,23 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
 import numpy as np
 
+from nightcap.geometry.corners import corner_sizes
 from nightcap.geometry.curves import Floats, Segment
+from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Ints
 
 TURN = math.tau / 10
 """Greatest angle that one edge spans on an arc, radians."""
-GROWTH = 0.7
+COARSE = 0.25
+"""Edge length at a corner, as a fraction of the shortest piece there; the finer layers are cut out of such triangles."""
+GROWTH = 0.5
 """How fast edges may grow with the distance from a corner."""
 GAP = 1.3
 """An edge beside a gap g along a curve of radius r is at most GAP sqrt((r + g) g)."""
-
-
-@dataclass(frozen=True)
-class Grading:
-    """How far the first mesh is graded, as fractions of the local length."""
-
-    corner: float = 1e-3
-    """Edge length at a sharp corner of a conductor."""
-    bend: float = 5e-2
-    """Edge length at a corner of a dielectric, or where materials meet on a conductor."""
-    contact: float = 1e-2
-    """Edge length where two curves touch."""
-
-
-def grading_for(accuracy: float) -> Grading:
-    """A first grading that suits an accuracy; refinement by shares does the rest.
-
-    At a corner of 270 degrees the share of the innermost ring of size h goes as h^(4/3).
-    """
-    return Grading(
-        corner=min(max(0.3 * accuracy**0.75, 1e-7), 0.05),
-        bend=min(max(accuracy**0.5, 1e-4), 0.1),
-        contact=min(max(accuracy ** (1 / 3), 1e-3), 0.05),
-    )
 
 
 def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
@@ -80,7 +59,9 @@ class _Sizes:
         curvature = np.abs([piece.curve.curvature for piece in pieces])
         self.radius = np.where(curvature > 0, 1 / np.maximum(curvature, 1e-300), np.inf)
         self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, TURN * self.radius)
-        self.sources, self.source_size = _corner_sources(layout, grading)
+        at_corners = corner_sizes(layout, Grading(corner=COARSE, bend=COARSE))
+        self.sources = layout.points[list(at_corners)]
+        self.source_size = np.array(list(at_corners.values()))
         self.near = _close_pairs(layout, self.coarsest)
         self.floor = grading.contact * np.where(np.isinf(self.radius), layout.size, self.radius)
         self.arcs = np.array([_arc_row(piece) for piece in pieces])
@@ -157,64 +138,6 @@ def _expand(lists: list[Ints], owner: Ints) -> tuple[Ints, Ints]:
     row = np.repeat(np.arange(len(owner)), per_row)
     within = np.arange(len(row)) - np.repeat(np.cumsum(per_row) - per_row, per_row)
     return row, flat[starts[owner[row]] + within]
-
-
-def _corner_sources(layout: Layout, grading: Grading) -> tuple[Floats, Floats]:
-    """Points where the field is not smooth (n, 2), and the edge lengths (n,) wanted there."""
-    arms: dict[int, list[tuple[float, Piece]]] = {}
-    for piece in layout.pieces:
-        for point, t, sense in ((piece.start, 0.0, 1.0), (piece.end, 1.0, -1.0)):
-            direction = sense * piece.curve.tangent(np.array(t))
-            arms.setdefault(point, []).append((math.atan2(direction[1], direction[0]), piece))
-    points, sizes = [], []
-    for point, meeting in arms.items():
-        length = min(piece.curve.length for _, piece in meeting)
-        fraction = _fraction(meeting, grading)
-        if fraction is not None:
-            points.append(layout.points[point])
-            sizes.append(fraction * length)
-    return np.reshape(points, (-1, 2)), np.array(sizes)
-
-
-def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | None:
-    """The grading that a point needs at which these pieces meet, or None where it is smooth."""
-    angles = sorted(angle % math.tau for angle, _ in meeting)
-    openings = np.diff([*angles, angles[0] + math.tau])
-    smooth = len(angles) == 2 and abs(openings[0] - math.pi) < 1e-6
-    cusped = bool((openings < 1e-6).any())
-    if smooth or cusped:
-        return None
-    on_conductor = any(min(piece.sides) < 0 for _, piece in meeting)
-    if on_conductor and _opens_wide(meeting):
-        return grading.corner
-    return grading.bend if len(angles) > 2 or not on_conductor else None
-
-
-def _opens_wide(meeting: list[tuple[float, Piece]]) -> bool:
-    """Whether the dielectric around a point of a conductor's surface spans more than a half turn."""
-    surface = sorted(angle % math.tau for angle, piece in meeting if min(piece.sides) < 0)
-    if len(surface) != 2:
-        return True
-    between = surface[1] - surface[0]
-    others = [angle % math.tau for angle, piece in meeting if min(piece.sides) >= 0]
-    if others:
-        inside = surface[0] < others[0] < surface[1]
-        return (between if inside else math.tau - between) > math.pi + 1e-6
-    return _dielectric_angle(meeting) > math.pi + 1e-6
-
-
-def _dielectric_angle(meeting: list[tuple[float, Piece]]) -> float:
-    """Angle of the dielectric at a corner where just two pieces of a conductor's surface meet."""
-    (angle, piece), (other, _) = meeting
-    starts_here = _leaves_along(angle, piece)
-    left, right = piece.sides if starts_here else piece.sides[::-1]
-    turn = (other - angle) % math.tau
-    return turn if left >= 0 > right else math.tau - turn
-
-
-def _leaves_along(angle: float, piece: Piece) -> bool:
-    direction = piece.curve.tangent(np.array(0.0))
-    return abs(math.remainder(math.atan2(direction[1], direction[0]) - angle, math.tau)) < 1e-9
 
 
 def _close_pairs(layout: Layout, coarsest: Floats) -> list[Ints]:

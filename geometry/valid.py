@@ -7,12 +7,14 @@ from dataclasses import fields, replace
 import numpy as np
 
 from nightcap.geometry.chords import Lenses, cusp_edges
+from nightcap.geometry.corners import with_layers
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.curving import curved_triangles
 from nightcap.geometry.errors import MeshError
+from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.mesh import Ints, Mesh, Triangulation, ascending
-from nightcap.geometry.sizes import Grading, divide_pieces
+from nightcap.geometry.sizes import divide_pieces
 from nightcap.geometry.triangulate import triangulate
 
 ROUNDS = 30
@@ -25,7 +27,7 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
     """Meshes a layout. Raises MeshError where no valid mesh comes out."""
     divisions = divide_pieces(layout, grading)
     for _ in range(ROUNDS):
-        flat, spans = triangulate(layout, divisions)
+        flat, spans = with_layers(*triangulate(layout, divisions), grading)
         turns = _turns(flat, spans)
         straight = cusp_edges(flat)
         flat = _without_blunt_corners(flat, np.where(straight, 0.0, turns))
@@ -41,6 +43,7 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
                 least_permittivity=low,
                 greatest_permittivity=high,
                 engulfed_by=lenses.conductor(flat),
+                grading=grading,
             )
         divisions = _halved(divisions, flat, spans, offenders)
     raise MeshError("no valid mesh found: two curves come too close to each other")

@@ -9,8 +9,8 @@ from dataclasses import dataclass
 from nightcap.geometry.case import Limits
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.errors import LimitError
+from nightcap.geometry.grading import grading_for
 from nightcap.geometry.layout import Layout
-from nightcap.geometry.sizes import grading_for
 from nightcap.geometry.valid import first_mesh
 from nightcap.solver.adapt import Step, first_order, next_step
 from nightcap.solver.bracket import Bracket

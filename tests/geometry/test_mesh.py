@@ -9,9 +9,9 @@ from nightcap.geometry import polynomials
 from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.case import Case
 from nightcap.geometry.curving import jacobian_bounds
+from nightcap.geometry.grading import Grading, grading_for
 from nightcap.geometry.mesh import Mesh
 from nightcap.geometry.refine import refine
-from nightcap.geometry.sizes import Grading, grading_for
 from nightcap.geometry.valid import first_mesh
 
 CASES = [

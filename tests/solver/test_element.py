@@ -9,7 +9,7 @@ from skfem.models.poisson import laplace
 
 from nightcap.geometry import polynomials
 from nightcap.geometry.build_layout import build_layout
-from nightcap.geometry.sizes import Grading
+from nightcap.geometry.grading import Grading
 from nightcap.geometry.valid import first_mesh
 from nightcap.solver.element import ElementTriLagrange
 from nightcap.solver.metric import metrics

@@ -12,10 +12,11 @@ from nightcap.geometry.case import Case, Material
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.curves import Segment
 from nightcap.geometry.errors import MeshError
+from nightcap.geometry.grading import Grading, grading_for
 from nightcap.geometry.layout import Layout, Piece, Region, conductor_side
 from nightcap.geometry.mesh import Mesh
 from nightcap.geometry.refine import refine
-from nightcap.geometry.sizes import Grading, divide_pieces, grading_for
+from nightcap.geometry.sizes import divide_pieces
 from nightcap.geometry.valid import first_mesh
 from nightcap.solver.cuts import cut_tree
 from nightcap.solver.fields import Fields
