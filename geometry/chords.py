@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, direction_and_bend
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Flags, Ints, Triangulation
 
@@ -36,7 +36,7 @@ def _cusps(layout: Layout) -> list[tuple[int, tuple[int, int]]]:
     arms: dict[int, list[tuple[float, float, int]]] = {}
     for k, piece in enumerate(layout.pieces):
         for point in (piece.start, piece.end):
-            arms.setdefault(point, []).append((*heading(piece, point), k))
+            arms.setdefault(point, []).append((*_heading(piece, point), k))
     found = []
     for point, leaving in arms.items():
         if len(leaving) < 3:
@@ -48,11 +48,8 @@ def _cusps(layout: Layout) -> list[tuple[int, tuple[int, int]]]:
     return found
 
 
-def heading(piece: Piece, point: int) -> tuple[float, float]:
-    """Direction, radians, and signed curvature, 1/m, with which a piece leaves one of its ends."""
-    leaves = piece.start == point
-    x, y = piece.curve.tangent(np.array(0.0 if leaves else 1.0)) * (1.0 if leaves else -1.0)
-    return math.atan2(y, x) % math.tau, piece.curve.curvature * (1.0 if leaves else -1.0)
+def _heading(piece: Piece, point: int) -> tuple[float, float]:
+    return direction_and_bend(piece.curve, piece.start == point)
 
 
 def _choice(layout: Layout, point: int, pair: tuple[int, int]) -> int:
@@ -60,7 +57,7 @@ def _choice(layout: Layout, point: int, pair: tuple[int, int]) -> int:
 
     Bent apart: either; a dielectric's, as it costs less. Bent the same way: the one bent more.
     """
-    bends = [heading(layout.pieces[k], point)[1] for k in pair]
+    bends = [_heading(layout.pieces[k], point)[1] for k in pair]
     if bends[0] * bends[1] < 0:
         dielectric = [k for k in pair if min(layout.pieces[k].sides) >= 0]
         return dielectric[0] if dielectric else pair[0]

@@ -42,6 +42,13 @@ class Curve(Protocol):
         """The piece between two parameters, t0 < t1."""
 
 
+def direction_and_bend(curve: Curve, from_start: bool) -> tuple[float, float]:
+    """Polar angle, in [0, 2 pi), and signed curvature, 1/m, with which a curve leaves its start, or its end."""
+    sign = 1.0 if from_start else -1.0
+    x, y = sign * curve.tangent(np.array(0.0 if from_start else 1.0))
+    return math.atan2(y, x) % math.tau, sign * curve.curvature
+
+
 @dataclass(frozen=True)
 class Segment:
     """A straight line from start to end."""

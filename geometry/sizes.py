@@ -15,7 +15,7 @@ from nightcap.geometry.mesh import Ints
 TURN = math.tau / 10
 """Greatest angle that one edge spans on an arc, radians."""
 COARSE = 0.25
-"""Edge length at a corner, as a fraction of the shortest piece there; the finer layers are cut out of such triangles."""
+"""Edge length at a corner, as a fraction of the shortest piece there; finer layers are cut out of such triangles."""
 GROWTH = 0.5
 """How fast edges may grow with the distance from a corner."""
 GAP = 1.3

@@ -67,7 +67,7 @@ def _condensed(K: Floats, lift: Floats) -> Floats:
 def bytes_needed(triangles: int, order: int, fields: int) -> float:
     """About the memory, bytes, that both problems take at once for so many fields.
 
-    MEASURED on squares and on 37 wires, orders 4 to 8, 4000 to 30 000 triangles: within a fifth. Edge matrices and their
+    MEASURED on squares and 37 wires, orders 4 to 8, 4000 to 30 000 triangles: within a fifth. Edge matrices and their
     indices count six times, a factor and its indices 0.25 log2(unknowns) times one and a half, fields four times.
     """
     b, n = skeleton_size(order), polynomials.count(order)

@@ -1,0 +1,170 @@
+"""From a case to its layout: outlines cut where they meet, faces painted, faces of one material joined."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from nightcap.geometry.arrangement import Arrangement, CutPiece, arrange
+from nightcap.geometry.case import Case, GroundPlane, Material, OpenSpace
+from nightcap.geometry.curves import Arc, Curve, Segment
+from nightcap.geometry.errors import CaseError
+from nightcap.geometry.layout import Layout, Piece, Region, conductor_side
+from nightcap.geometry.layout_checks import find_problems
+from nightcap.geometry.painting import Drawing, paint
+
+OUTSIDE = "outside"
+Content = int | Material | str
+"""What fills a face: the number of a conductor, a material, or what lies outside the domain."""
+
+
+def build_layout(case: Case) -> Layout:
+    """Resolves what a case draws into regions with exact outlines.
+
+    Raises CaseError with every geometric mistake, e.g. conductors that overlap.
+    """
+    drawing = paint(case)
+    plane = arrange(drawing.outlines, drawing.tolerance)
+    members = plane.memberships(drawing.outlines)
+    problems = find_problems(case, drawing, plane, members)
+    if problems:
+        raise CaseError(problems)
+    contents = [_content(case, drawing, inside) for inside in members]
+    return _Joined(case, drawing, plane, contents).layout()
+
+
+def _content(case: Case, drawing: Drawing, inside: frozenset[int]) -> Content:
+    """What a face inside these outlines is filled with: the last one painted."""
+    domain = len(drawing.drawn)
+    if domain not in inside:
+        return OUTSIDE
+    top = max(inside - {domain}, default=None)
+    if top is None:
+        return case.background
+    drawn = drawing.drawn[top]
+    if drawn.material is not None:
+        return drawn.material
+    assert drawn.conductor is not None  # noqa: S101 - what has no material is a conductor
+    return drawn.conductor
+
+
+@dataclass(frozen=True, eq=False)
+class _Joined:
+    """The faces after joining those of one content, and the numbering that a layout wants."""
+
+    case: Case
+    drawing: Drawing
+    whole: Arrangement
+    contents: list[Content]
+
+    def _content_of(self, half: int) -> Content:
+        return self.contents[self.whole.loop_of[half]]
+
+    @cached_property
+    def kept(self) -> list[int]:
+        """The pieces that separate two contents, one of them a dielectric."""
+        return [
+            k
+            for k in range(len(self.whole.pieces))
+            if self._content_of(2 * k) != self._content_of(2 * k + 1)
+            and any(isinstance(self._content_of(half), Material) for half in (2 * k, 2 * k + 1))
+        ]
+
+    @cached_property
+    def plane(self) -> Arrangement:
+        """What is left: the kept pieces between the points that they need."""
+        pieces = [self.whole.pieces[k] for k in self.kept]
+        used = sorted({point for piece in pieces for point in (piece.start, piece.end)})
+        number = {point: k for k, point in enumerate(used)}
+        renumbered = tuple(CutPiece(p.curve, number[p.start], number[p.end], p.outlines) for p in pieces)
+        return Arrangement(self.whole.points[used], renumbered)
+
+    def content(self, half: int) -> Content:
+        """What lies left of a half-edge of the joined plane."""
+        return self._content_of(2 * self.kept[half // 2] + half % 2)
+
+    @cached_property
+    def region(self) -> dict[int, int]:
+        """The region of each loop that bounds a dielectric."""
+        filled = [k for k, loop in enumerate(self.plane.loops) if isinstance(self.content(loop[0]), Material)]
+        outer = [k for k in filled if self.plane.areas[k] > 0]
+        number = {k: n for n, k in enumerate(outer)}
+        return {k: number[k if k in number else self._holder(k)] for k in filled}
+
+    def _holder(self, loop: int) -> int:
+        holder = self.plane.holder[loop]
+        assert holder is not None  # noqa: S101 - a dielectric always lies within the domain
+        return holder
+
+    @cached_property
+    def conductors(self) -> tuple[str, ...]:
+        """All names, the boundary's last."""
+        names = tuple(conductor.name for conductor in self.case.conductors)
+        return names if isinstance(self.case.boundary, OpenSpace) else (*names, self.case.boundary.name)
+
+    def layout(self) -> Layout:
+        """The layout, with the far region where space is open."""
+        count = max(self.region.values()) + 1
+        loops: list[list[tuple[int, ...]]] = [[] for _ in range(count)]
+        materials: list[Material] = [self.case.background] * count
+        for k in sorted(self.region, key=lambda k: self.plane.areas[k] < 0):
+            halves = self.plane.loops[k]
+            loops[self.region[k]].append(tuple((half // 2 + 1) * (1 if half % 2 == 0 else -1) for half in halves))
+            content = self.content(halves[0])
+            assert isinstance(content, Material)  # noqa: S101 - only such loops have a region
+            materials[self.region[k]] = content
+        palette = list(dict.fromkeys([*materials, self.case.background]))
+        regions = [Region(tuple(walks), palette.index(m)) for walks, m in zip(loops, materials, strict=True)]
+        pieces = [Piece(p.curve, p.start, p.end, self._sides(k)) for k, p in enumerate(self.plane.pieces)]
+        if self.drawing.rim:
+            self._add_far_region(pieces, regions, palette.index(self.case.background))
+        return Layout(
+            self.plane.points,
+            tuple(pieces),
+            tuple(regions),
+            tuple(palette),
+            self.conductors,
+            self.conductors.index(self.case.reference),
+            self.drawing.size,
+            self.drawing.rim,
+        )
+
+    def _sides(self, piece: int) -> tuple[int, int]:
+        """What lies left and right; on the rim the near region comes first."""
+        sides = [self._side(half) for half in (2 * piece, 2 * piece + 1)]
+        return (sides[0], sides[1])
+
+    def _side(self, half: int) -> int:
+        content = self.content(half)
+        if isinstance(content, Material):
+            return self.region[self.plane.loop_of[half]]
+        if isinstance(content, int):
+            return conductor_side(content)
+        if self._on_rim(self.plane.pieces[half // 2].curve):
+            return max(self.region.values()) + 1  # the far region
+        return conductor_side(len(self.conductors) - 1)
+
+    def _on_rim(self, curve: Curve) -> bool:
+        rim = self.drawing.rim
+        return rim is not None and isinstance(curve, Arc) and curve.radius == rim[1] and curve.centre == rim[0]
+
+    def _add_far_region(self, pieces: list[Piece], regions: list[Region], material: int) -> None:
+        """Closes the rim, counter-clockwise, from the other side: with itself, or along the ground plane."""
+        rim = [k for k, piece in enumerate(pieces) if self._on_rim(piece.curve)]
+        rim.sort(key=lambda k: _angle(pieces[k].curve))
+        walk = [k + 1 for k in rim]
+        if isinstance(self.case.boundary, GroundPlane):
+            start, end = pieces[rim[-1]].end, pieces[rim[0]].start
+            ends = [tuple(self.plane.points[point].tolist()) for point in (start, end)]
+            sides = (len(regions), conductor_side(len(self.conductors) - 1))
+            pieces.append(Piece(Segment(ends[0], ends[1]), start, end, sides))
+            walk.append(len(pieces))
+        regions.append(Region((tuple(walk),), material, far=True))
+
+
+def _angle(curve: Curve) -> float:
+    """Polar angle, in [0, 2 pi), of the middle of an arc."""
+    assert isinstance(curve, Arc)  # noqa: S101 - the rim is made of arcs
+    return float(np.mod((curve.start_angle + curve.end_angle) / 2, 2 * np.pi))
