@@ -72,5 +72,5 @@ def _split(mesh: Mesh, blamed: Flags) -> Mesh:
     touched = touched[touched < drawn]
     mesh = refine(mesh, blamed)
     for _ in range(LEVELS - 1):
-        mesh = refine(mesh, np.isin(mesh.triangles, touched).any(axis=1))
+        mesh = refine(mesh, np.asarray(np.isin(mesh.triangles, touched).any(axis=1), dtype=np.bool_))
     return mesh

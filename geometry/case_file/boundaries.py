@@ -1,0 +1,68 @@
+"""The boundaries that a case file knows."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from pydantic import Field
+
+from nightcap.geometry.case import Boundary, GroundPlane, OpenSpace, Shield
+from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
+from nightcap.geometry.case_file.quantities import Length
+from nightcap.geometry.case_file.schema import Entry, Text, checked
+from nightcap.geometry.case_file.shapes import shaped
+from nightcap.geometry.case_file.yaml_tree import Tree
+
+
+class ShieldKeys(Entry):
+    """A grounded conductor whose inside is the shape."""
+
+    kind: Text
+    name: Text = "shield"
+
+
+class OpenKeys(Entry):
+    """Unbounded space all around."""
+
+    kind: Text
+
+
+class GroundPlaneKeys(Entry):
+    """A grounded plane below the layout."""
+
+    kind: Text
+    name: Text = "plane"
+    at: Length = Field(0.0, description="Height y of the plane.")
+
+
+def _shield(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
+    read = shaped(ShieldKeys, tree, path, problems, context)
+    return Shield(read[1], read[0].name) if read else None
+
+
+def _open(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
+    return OpenSpace() if checked(OpenKeys, tree, path, problems, context) else None
+
+
+def _ground_plane(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
+    entry = checked(GroundPlaneKeys, tree, path, problems, context)
+    return GroundPlane(entry.at, entry.name) if entry else None
+
+
+BOUNDARIES = {"shield": _shield, "open": _open, "ground_plane": _ground_plane}
+"""A new kind is one more reader and one more line here."""
+
+
+def read_boundary(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
+    """The boundary of a case, or None after noting every mistake in it."""
+    if not isinstance(tree, dict):
+        problems.add(path, f"must be a mapping with the key 'kind' ({listed(BOUNDARIES)})")
+        return None
+    if "kind" not in tree:
+        problems.add(path, f"the key 'kind' is missing; allowed: {listed(BOUNDARIES)}")
+        return None
+    kind = tree["kind"]
+    if not isinstance(kind, str) or kind not in BOUNDARIES:
+        problems.add(under(path, "kind"), one_of(kind, BOUNDARIES))
+        return None
+    return BOUNDARIES[kind](tree, path, problems, context)

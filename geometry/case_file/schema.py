@@ -1,0 +1,175 @@
+"""What each entry of a case file may hold, and the translation of pydantic's complaints into ours."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Annotated, Any, TypeVar
+
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError
+
+from nightcap.geometry.case import Limits, Material
+from nightcap.geometry.case_file.problems import Problems, listed, nearest, under
+from nightcap.geometry.case_file.quantities import (
+    LENGTHS,
+    Accuracy,
+    Duration,
+    LossTangent,
+    Memory,
+    Permittivity,
+    PositiveLength,
+    Tolerance,
+)
+from nightcap.geometry.case_file.yaml_tree import Tree
+
+
+class Entry(BaseModel):
+    """A mapping whose keys are all known."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, arbitrary_types_allowed=True)
+
+
+EntryType = TypeVar("EntryType", bound=Entry)
+
+
+def _text(value: object) -> str:
+    if not isinstance(value, str):
+        raise ValueError("must be text; put it in quotes")
+    if not value.isprintable():
+        raise ValueError("must be one line of printable characters")
+    return value
+
+
+def _flag(value: object) -> bool:
+    if not isinstance(value, bool):
+        raise ValueError("must be true or false")
+    return value
+
+
+def _unit(value: object) -> float:
+    if not isinstance(value, str) or value not in LENGTHS:
+        raise ValueError(f"{value!r} is no unit of length; allowed: {listed(LENGTHS)}")
+    return LENGTHS[value]
+
+
+def _label(value: object) -> str:
+    return _text(value)
+
+
+def _count(value: object) -> int:
+    if isinstance(value, bool) or not isinstance(value, int) or not 100 <= value <= 10**8:
+        raise ValueError("must be a whole number from 100 to 100000000")
+    return value
+
+
+def _names(value: object) -> tuple[tuple[str, ...], ...]:
+    groups = value if isinstance(value, list) else None
+    if groups is None or any(not isinstance(group, list) or len(group) < 2 for group in groups):
+        raise ValueError("must be a list of groups of at least two names, e.g. [[drain, screen]]")
+    if any(not isinstance(name, str) for group in groups for name in group):
+        raise ValueError("must hold names of conductors")
+    return tuple(tuple(group) for group in groups)
+
+
+def _matrix(value: object) -> tuple[tuple[float, ...], ...]:
+    if not isinstance(value, list) or not value or any(not isinstance(row, list) for row in value):
+        raise ValueError("must be a matrix, e.g. [[3.2, -1.1], [-1.1, 3.2]]")
+    if any(isinstance(x, bool) or not isinstance(x, int | float) for row in value for x in row):
+        raise ValueError("must hold plain numbers")
+    if any(len(row) != len(value) for row in value):
+        raise ValueError("must have as many columns as rows")
+    return tuple(tuple(float(x) for x in row) for row in value)
+
+
+Text = Annotated[str, BeforeValidator(_text)]
+Flag = Annotated[bool, BeforeValidator(_flag)]
+Matrix = Annotated[tuple[tuple[float, ...], ...], BeforeValidator(_matrix)]
+
+
+class MaterialKeys(Entry):
+    """A dielectric, by its numbers."""
+
+    permittivity: Permittivity = Field(description="Relative permittivity, at least 1.")
+    loss_tangent: LossTangent = Field(0.0, description="Loss tangent.")
+    material: Text = Field("", description="What it is called in pictures and tables.")
+
+    def record(self) -> Material:
+        """The material of the case."""
+        return Material(self.permittivity, self.loss_tangent, self.material)
+
+
+class CoatingEntry(MaterialKeys):
+    """One layer of insulation."""
+
+    thickness: PositiveLength = Field(description="Thickness of the layer.")
+
+
+class ConductorKeys(Entry):
+    """What a conductor has besides its shape."""
+
+    coatings: Any = Field(None, description="Layers of insulation, from the inside out.")
+    floating: Flag = Field(False, description="True for a conductor without charge, e.g. an unconnected core.")
+
+
+class LimitsEntry(Entry):
+    """What a case may use."""
+
+    triangles: Annotated[int, BeforeValidator(_count)] = Limits().triangles
+    memory: Memory = Limits().memory
+    time: Duration = Limits().time
+
+
+class ExpectEntry(Entry):
+    """A matrix to compare with."""
+
+    capacitance: Matrix | None = Field(None, description="Maxwell capacitance matrix, F/m.")
+    relative: Matrix | None = Field(None, description="The same over eps0.")
+    tolerance: Tolerance = Field(description="Allowed deviation relative to sqrt(C_ii C_jj).")
+    source: Text = Field(description="Where the matrix comes from.")
+    exact: Flag = Field(False, description="True if all digits are exact; they must then lie inside the bracket.")
+
+
+class CaseEntry(Entry):
+    """The keys of a whole file; entries with shapes are read one by one afterwards."""
+
+    title: Text = Field("", description="One line about the case.")
+    units: Annotated[float, BeforeValidator(_unit)] = Field(1e-3, description="Unit of bare numbers.")
+    accuracy: Accuracy = Field(1e-4, description="Half-width of the bracket relative to sqrt(C_ii C_jj).")
+    conductors: Any = Field(description="Name to shape and coatings.")
+    dielectrics: Any = Field(None, description="Name to shape and material; later ones cover earlier ones.")
+    background: Any = Field(None, description="Material of all that is not drawn.")
+    boundary: Any = Field(description="Shield, open space or ground plane.")
+    reference: Text | None = Field(None, description="The conductor that the matrix is relative to.")
+    tie: Annotated[tuple[tuple[str, ...], ...], BeforeValidator(_names)] = ()
+    limits: Any = None
+    expect: Any = None
+
+
+def checked(
+    model: type[EntryType], tree: Tree, path: str, problems: Problems, context: Mapping[str, Any]
+) -> EntryType | None:
+    """An entry of a model, or None after noting every mistake in it."""
+    if not isinstance(tree, dict):
+        problems.add(path, f"must be a mapping with the keys {listed(model.model_fields)}")
+        return None
+    try:
+        return model.model_validate(tree, context=dict(context))
+    except ValidationError as error:
+        for detail in error.errors():
+            _translate(detail, model, path, problems)
+        return None
+
+
+def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -> None:
+    place = path
+    for key in detail["loc"]:
+        place = under(place, key)
+    name = str(detail["loc"][-1]) if detail["loc"] else ""
+    if detail["type"] == "extra_forbidden":
+        known = list(model.model_fields)
+        problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
+    elif detail["type"] == "missing":
+        problems.add(path, f"the key '{name}' is missing")
+    elif detail["type"] == "value_error":
+        problems.add(place, str(detail["ctx"]["error"]))
+    else:
+        problems.add(place, str(detail["msg"]))
