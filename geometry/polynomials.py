@@ -88,7 +88,7 @@ def quadrature(degree: int) -> tuple[Floats, Floats]:
     a, weight_a = roots_jacobi(n, 0, 0)
     b, weight_b = roots_jacobi(n, 1, 0)
     y = (1 + b)[:, None] / 2 * np.ones(n)
-    x = (1 + a) / 2 * (1 - y)
+    x = np.asarray((1 + a) / 2 * (1 - y), dtype=np.float64)
     weights = np.outer(weight_b, weight_a).ravel() / 8
     return np.array([x.ravel(), y.ravel()], dtype=np.float64), np.asarray(weights, dtype=np.float64)
 
@@ -97,7 +97,7 @@ def quadrature(degree: int) -> tuple[Floats, Floats]:
 def nodal_coefficients(order: int) -> Floats:
     """(n, n): row i holds the orthonormal coefficients of the Lagrange polynomial of node i."""
     vandermonde, _ = orthonormal(order, nodes(order))
-    return np.linalg.inv(vandermonde)
+    return np.asarray(np.linalg.inv(vandermonde), dtype=np.float64)
 
 
 def lagrange(order: int, x: Floats) -> tuple[Floats, Floats]:

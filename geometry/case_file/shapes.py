@@ -122,7 +122,7 @@ def shaped(
             problems.add(path, f"the key 'shape' is missing; allowed: {listed(SHAPES)}")
         return None
     entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
-    return None if entry is None else (entry, entry.figure())  # type: ignore[return-value]
+    return None if entry is None else (entry, entry.figure())
 
 
 @cache

@@ -35,11 +35,10 @@ class UnreadableError(Exception):
 def compose(text: str) -> yaml.Node | None:
     """The nodes of a single YAML document, or None for an empty one. Raises UnreadableError."""
     try:
-        return yaml.compose(text, Loader=yaml.SafeLoader)  # type: ignore[no-any-return]
+        return yaml.compose(text, Loader=yaml.SafeLoader)
     except yaml.reader.ReaderError as error:
-        raise UnreadableError(
-            None, f"is not text: character {error.character!r} at position {error.position}"
-        ) from error
+        said = f"is not text: character {error.character!r} at position {error.position}"
+        raise UnreadableError(None, said) from error
     except yaml.MarkedYAMLError as error:
         mark = error.problem_mark or error.context_mark
         said = " ".join(str(part) for part in (error.context, error.problem) if part)
@@ -83,7 +82,8 @@ class Planter:
             return [self.tree(item, under(path, k)) for k, item in enumerate(node.value)]
         if isinstance(node, yaml.MappingNode):
             return self._mapping(node, path)
-        return node.value if node.style in ("'", '"', "|", ">") else _scalar(node.value)
+        plain = isinstance(node, yaml.ScalarNode) and node.style is None
+        return _scalar(node.value) if plain else str(node.value)
 
     def _mapping(self, node: yaml.MappingNode, path: str) -> dict[str, Tree]:
         tree: dict[str, Tree] = {}
