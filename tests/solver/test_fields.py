@@ -16,7 +16,6 @@ from nightcap.geometry.grading import Grading, grading_for
 from nightcap.geometry.layout import Layout, Piece, Region, conductor_side
 from nightcap.geometry.mesh import Mesh
 from nightcap.geometry.refine import refine
-from nightcap.geometry.sizes import divide_pieces
 from nightcap.geometry.valid import first_mesh
 from nightcap.solver.cuts import cut_tree
 from nightcap.solver.fields import Fields
@@ -66,7 +65,8 @@ def test_coax_is_the_logarithm() -> None:
 def test_shares_add_up_to_the_width(case: Case) -> None:
     """Prager and Synge 1947: the bracket's width is the integral of the mismatch of the two fields."""
     fields = fields_of(case, 3)
-    assert_allclose(fields.share.sum(axis=0), np.diag(fields.bracket.width), rtol=1e-8)
+    rounding = 1e-11 * np.diag(fields.bracket.value).max()
+    assert_allclose(fields.share.sum(axis=0), np.diag(fields.bracket.width), rtol=1e-8, atol=rounding)
     assert (fields.share >= 0).all()
 
 
@@ -132,14 +132,14 @@ def uniform(mesh: Mesh, times: int) -> Mesh:
     return mesh
 
 
-@pytest.mark.parametrize(("order", "grading"), [(1, Grading()), (2, Grading()), (3, Grading())])
-def test_width_converges_in_h_at_twice_the_order(order: int, grading: Grading) -> None:
+@pytest.mark.parametrize(("order", "ceiling"), [(1, 3e-3), (2, 5e-6), (3, 1e-8)])
+def test_width_converges_in_h_at_twice_the_order(order: int, ceiling: float) -> None:
     """Smooth layout: the energy error falls as h^(2p)."""
-    mesh = first_mesh(build_layout(coax(1.0, 2.0, 0.3)), grading)
-    widths = [solve_fields(uniform(mesh, k), order, 1e-13, Stopwatch()).bracket.relative for k in (1, 2, 3)]
+    mesh = first_mesh(build_layout(coax(1.0, 2.0, 0.3)), Grading())
+    widths = [solve_fields(uniform(mesh, k), order, 1e-13, Stopwatch()).bracket.relative for k in (0, 1, 2)]
     rate = np.polyfit(np.arange(3), np.log2(widths), 1)[0]
-    assert -2 * order - 0.4 < rate < -2 * order + 0.4
-    assert widths[-1] < {1: 3e-3, 2: 1e-5, 3: 1e-7}[order]
+    assert -2 * order - 0.5 < rate < -2 * order + 0.5
+    assert widths[-1] < ceiling
 
 
 def test_width_converges_exponentially_in_p() -> None:
@@ -162,5 +162,5 @@ def test_width_at_a_corner_converges_at_the_rate_of_its_singularity() -> None:
 
 def test_grading_follows_the_accuracy() -> None:
     layout = build_layout(square_in_square())
-    coarse, fine = (sum(map(len, divide_pieces(layout, grading_for(a)))) for a in (1e-2, 1e-6))
+    coarse, fine = (len(first_mesh(layout, grading_for(a)).triangles) for a in (1e-2, 1e-6))
     assert fine > 1.5 * coarse
