@@ -98,7 +98,7 @@ def _candidates(table: CurveTable, one: Ints, two: Ints, tolerance: float) -> Fl
     bent = (table.radius[one] > 0).astype(int) + (table.radius[two] > 0)
     for kind, rule in enumerate((_line_line, _line_circle, _circle_circle)):
         rows = np.flatnonzero(bent == kind)
-        with np.errstate(divide="ignore", invalid="ignore"):
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
             crossings[rows] = rule(table, one[rows], two[rows], tolerance)
     ends = np.stack([table.start[one], table.end[one], table.start[two], table.end[two]], axis=1)
     return np.concatenate([crossings, ends], axis=1)

@@ -179,5 +179,3 @@ def _along(table: CurveTable, k: int, t: Floats) -> Floats:
         return np.asarray(table.start[k] + t[:, None] * (table.end[k] - table.start[k]))
     phi = table.angle[k] + t * table.sweep[k]
     return np.asarray(table.centre[k] + table.radius[k] * np.stack([np.cos(phi), np.sin(phi)], axis=1))
-
-

@@ -67,7 +67,8 @@ def _how_solved(result: Result) -> str:
     ]
     if result.mesh:
         mesh = result.mesh
-        parts.append(f"{mesh.rounds} rounds, order {mesh.order}, {grouped(mesh.triangles)} triangles")
+        rounds = "1 round" if mesh.rounds == 1 else f"{mesh.rounds} rounds"
+        parts.append(f"{rounds}, order {mesh.order}, {grouped(mesh.triangles)} triangles")
         parts.append(f"{grouped(mesh.unknowns)} unknowns")
     parts.append(f"{result.seconds.get('total', 0.0):.2f} s")
     return "; ".join(parts)
