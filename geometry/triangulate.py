@@ -18,11 +18,17 @@ OPTIONS = {
     "General.Verbosity": 0,
     "General.NumThreads": 1,
     "Mesh.Algorithm": 5,  # Delaunay: follows steep changes of size
-    "Mesh.MeshSizeExtendFromBoundary": 1,
+    "Mesh.MeshSizeExtendFromBoundary": 0,  # a field does that, at a rate of our own
     "Mesh.MeshSizeFromPoints": 0,
     "Mesh.MeshSizeFromCurvature": 0,
     "Mesh.RandomFactor": 1e-9,
 }
+
+
+GROWTH = 0.8
+"""How fast triangles grow with the distance from the nearest curve."""
+FARTHEST = 10.0
+"""No point is farther from a curve than this, in sizes of the layout."""
 
 
 @contextmanager
@@ -96,6 +102,19 @@ def _describe(gmsh: ModuleType, layout: Layout, points: Floats, along: list[Ints
             geo.addCurveLoop([tag for piece in walk for tag in _walked(lines, piece)], loop)
         geo.addPlaneSurface(list(range(first, loop + 1)), k)
     geo.synchronize()
+    _grow_from_curves(gmsh, tag, len(layout.regions))
+
+
+def _grow_from_curves(gmsh: ModuleType, lines: int, surfaces: int) -> None:
+    """Triangles as large as the nearest edge, plus so much of the distance to it."""
+    field = gmsh.model.mesh.field
+    tag = field.add("Extend")
+    field.setNumbers(tag, "CurvesList", list(range(1, lines + 1)))
+    field.setNumbers(tag, "SurfacesList", list(range(1, surfaces + 1)))
+    field.setNumber(tag, "Power", 1.0)
+    field.setNumber(tag, "DistMax", FARTHEST)
+    field.setNumber(tag, "SizeMax", GROWTH * FARTHEST)
+    field.setAsBackgroundMesh(tag)
 
 
 def _walked(lines: list[list[int]], piece: int) -> list[int]:

@@ -130,7 +130,7 @@ def _arriving(source: Wire, here: Wire, around: Surroundings, count: int, same: 
 
 
 def _from_pole(pole: complex, radius: float, here: Wire, count: int) -> Complex:
-    """(count + 1, count + 1) from -log(z - pole) and (radius / (z - pole))^n to powers of (z - here) / outside, from 0."""
+    """(count + 1, count + 1) from -log(z - pole), (radius / (z - pole))^n to powers of (z - here) / outside, from 0."""
     gap = here.centre - pole
     n, m = np.arange(1, count + 1), np.arange(1, count + 1)
     T = np.empty((count + 1, count + 1), dtype=complex)
