@@ -115,7 +115,7 @@ class _Joined:
             content = self.content(halves[0])
             assert isinstance(content, Material)  # noqa: S101 - only such loops have a region
             materials[self.region[k]] = content
-        palette = list(dict.fromkeys([*materials, self.case.background]))
+        palette = sorted({*materials, self.case.background}, key=lambda m: (m.permittivity, m.loss_tangent, m.name))
         regions = [Region(tuple(walks), palette.index(m)) for walks, m in zip(loops, materials, strict=True)]
         pieces = [Piece(p.curve, p.start, p.end, self._sides(k)) for k, p in enumerate(self.plane.pieces)]
         if self.drawing.rim:

@@ -17,6 +17,8 @@ from nightcap.outputs.outlines import points_along
 MARGIN = {Shield: 0.08, GroundPlane: 0.35}
 """Of the size of what is drawn, around it; open space gets the last."""
 OPEN_MARGIN = 0.45
+CLOSE_UP = 2.0
+"""Room left around conductors that are small in their shield, in sizes of what they take."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -60,14 +62,23 @@ class View:
 
 def view_of(case: Case) -> View:
     """The drawn shapes with a margin; the plane below them too, where there is one."""
-    outlines = [points_along(curve) for shape in _shapes(case) for curve in shape.outline()]
-    points = np.concatenate(outlines)
-    low, high = points.min(axis=0), points.max(axis=0)
+    low, high = _box(_shapes(case))
+    if isinstance(case.boundary, Shield):
+        inner_low, inner_high = _box(conductor.shape for conductor in case.conductors)
+        room = CLOSE_UP * float((inner_high - inner_low).max())
+        if room < float((high - low).max()) / 2:  # small conductors in a wide shield: look at these
+            low, high = np.maximum(low, inner_low - room / 2), np.minimum(high, inner_high + room / 2)
     if isinstance(case.boundary, GroundPlane):
         low[1] = min(low[1], case.boundary.at)
     margin = MARGIN.get(type(case.boundary), OPEN_MARGIN) * float((high - low).max())
     bottom = low[1] - (0.2 * margin if isinstance(case.boundary, GroundPlane) else margin)
     return View(float(low[0] - margin), float(bottom), float(high[0] + margin), float(high[1] + margin))
+
+
+def _box(shapes: Iterable[Shape]) -> tuple[Floats, Floats]:
+    """Low and high corner of the box around some shapes, m."""
+    points = np.concatenate([points_along(curve) for shape in shapes for curve in shape.outline()])
+    return points.min(axis=0), points.max(axis=0)
 
 
 def _shapes(case: Case) -> Iterable[Shape]:
