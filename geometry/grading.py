@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 
@@ -15,6 +16,8 @@ class Grading:
     """Edge length at a corner of a dielectric, or where materials meet on a conductor."""
     contact: float = 1e-2
     """Edge length where two curves touch."""
+    turn: float = math.tau / 10
+    """Greatest angle that one edge spans on an arc, radians; what its polynomial leaves of it goes as turn^9."""
 
 
 def grading_for(accuracy: float) -> Grading:
@@ -27,4 +30,5 @@ def grading_for(accuracy: float) -> Grading:
         corner=min(max(0.3 * accuracy**0.75, 1e-7), 0.05),
         bend=min(max(accuracy**0.5, 1e-4), 0.1),
         contact=min(max(0.3 * accuracy ** (1 / 3), 1e-4), 0.05),
+        turn=math.tau / (10 if accuracy >= 3e-9 else 18),
     )

@@ -12,8 +12,6 @@ from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Ints
 
-TURN = math.tau / 10
-"""Greatest angle that one edge spans on an arc, radians."""
 COARSE = 0.25
 """Edge length at a corner, as a fraction of the shortest piece there; finer layers are cut out of such triangles."""
 GROWTH = 0.5
@@ -58,7 +56,7 @@ class _Sizes:
         self.lengths = np.array([piece.curve.length for piece in pieces])
         curvature = np.abs([piece.curve.curvature for piece in pieces])
         self.radius = np.where(curvature > 0, 1 / np.maximum(curvature, 1e-300), np.inf)
-        self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, TURN * self.radius)
+        self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, grading.turn * self.radius)
         at_corners = corner_sizes(layout, Grading(corner=COARSE, bend=COARSE))
         self.sources = layout.points[list(at_corners)]
         self.source_size = np.array(list(at_corners.values()))

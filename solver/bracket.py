@@ -47,12 +47,16 @@ class Bracket:
         return float((np.diag(self.half_width) / np.diag(self.value)).max(initial=0.0))
 
     def checked(self) -> Bracket:
-        """The same bracket; raises BracketError if its bounds contradict each other beyond rounding."""
+        """The same bracket, or one widened by as much as its bounds contradict each other.
+
+        Raises BracketError if that is more than rounding explains.
+        """
         scale = 1 / np.sqrt(np.abs(np.diag(self.upper)))
         least = np.linalg.eigvalsh(self.width * np.outer(scale, scale))[0] if len(scale) else 0.0
         if not (np.isfinite(self.lower).all() and np.isfinite(self.upper).all() and least > -ROUNDING):
             raise BracketError(f"the lower bound exceeds the upper one by {-least:.1e} of the matrix")
-        return self
+        wider = np.diag(np.diag(self.upper)) * max(-float(least), 0.0)
+        return Bracket(self.lower - wider, self.upper + wider)
 
     def keep(self, rows: Sequence[int] | Ints) -> Bracket:
         """Grounds all conductors but the kept ones: deletes rows and columns."""

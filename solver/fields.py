@@ -49,6 +49,9 @@ class Fields:
     """(T, N) each triangle's share of D_ii, relative to eps0."""
     bracket: Bracket
     """Relative to eps0."""
+    floor: float
+    """Part of the relative half-width that the polynomial edges leave of the exact curves; neither a higher order nor
+    splitting makes it smaller."""
     unknowns: int
 
     def sample(self, subdivisions: int = 4) -> Sample:

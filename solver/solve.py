@@ -91,6 +91,10 @@ def solve(
         if reached <= accuracy:
             rounds.append(_round(fields, reached, "met", start))
             break
+        if fields.floor > accuracy * fields.bracket.relative / reached / 2:
+            reason = f"the polynomial edges of curves alone leave {fields.floor:.1e}"
+            rounds.append(_round(fields, reached, "ended", start))
+            break
         with watch.on("mesh"):
             step = next_step(fields, accuracy * fields.bracket.relative / reached)
         rounds.append(_round(fields, reached, step.action, start))

@@ -37,9 +37,11 @@ def solve_fields(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> 
     flux = flux @ lower
     pairing = edge_pairing(order) * (mesh.orientation * np.where(mesh.far, -1.0, 1.0))[:, None, None]
     mixed = np.einsum("tbn,tbn->tn", potential, pairing @ flux)
-    share = _per_triangle(above, potential) + _per_triangle(below, flux) - 2 * np.sign(mixed.sum()) * mixed
+    energy = _per_triangle(above, potential) + _per_triangle(below, flux)
+    share = energy - 2 * np.sign(mixed.sum()) * mixed
+    floor = float((mesh.curved.dilatation @ energy[mesh.curved.index] / np.diag(upper)).max() / 2)
     bracket = Bracket((lower + lower.T) / 2 * (1 - ALLOWANCE), (upper + upper.T) / 2 * (1 + ALLOWANCE)).checked()
-    return Fields(mesh, local, potential, flux, np.maximum(share, 0.0), bracket, int(dofs.max()) + 1)
+    return Fields(mesh, local, potential, flux, np.maximum(share, 0.0), bracket, floor, int(dofs.max()) + 1)
 
 
 def solve_potentials(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> tuple[Floats, Floats]:

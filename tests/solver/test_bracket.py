@@ -89,3 +89,10 @@ def test_no_floating_conductor_changes_nothing() -> None:
     exact, bracket = maxwell(4, 99)
     assert_allclose(bracket.eliminate([]).lower, bracket.lower, rtol=1e-15)
     assert holds(bracket.eliminate([]), exact)
+
+
+def test_bounds_that_contradict_each_other_by_rounding_are_widened() -> None:
+    bracket = Bracket(np.eye(2), np.diag([1.0, 1.0 - 1e-12])).checked()
+    assert np.linalg.eigvalsh(bracket.width)[0] > 0
+    assert np.linalg.eigvalsh(bracket.upper - np.eye(2))[0] >= 0
+    assert np.linalg.eigvalsh(np.diag([1.0, 1.0 - 1e-12]) - bracket.lower)[0] >= 0
