@@ -87,7 +87,7 @@ class Arrangement:
         area = ((x0 - ox) * (y1 - oy) - (x1 - ox) * (y0 - oy)) / 2
         if isinstance(curve, Arc):
             area += curve.radius**2 * (curve.sweep - math.sin(curve.sweep)) / 2
-        return area if half % 2 == 0 else -area
+        return float(area if half % 2 == 0 else -area)
 
     @cached_property
     def component(self) -> Ints:

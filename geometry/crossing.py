@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 import numpy as np
 
@@ -68,7 +69,7 @@ def cut_parameters(curves: Sequence[Curve], tolerance: float) -> list[Floats]:
     order = np.lexsort((where, owner))
     bounds = np.searchsorted(owner[order], np.arange(len(curves) + 1))
     slack = 4 * tolerance / table.length
-    return [_distinct(where[order[a:b]], slack[k]) for k, (a, b) in enumerate(zip(bounds, bounds[1:], strict=False))]
+    return [_distinct(where[order[a:b]], slack[k]) for k, (a, b) in enumerate(pairwise(bounds))]
 
 
 def _distinct(t: Floats, slack: float) -> Floats:
@@ -104,7 +105,7 @@ def _candidates(table: CurveTable, one: Ints, two: Ints, tolerance: float) -> Fl
     return np.concatenate([crossings, ends], axis=1)
 
 
-def _line_line(table: CurveTable, one: Ints, two: Ints, tolerance: float) -> Floats:
+def _line_line(table: CurveTable, one: Ints, two: Ints, _: float) -> Floats:
     u, v = table.end[one] - table.start[one], table.end[two] - table.start[two]
     apart = table.start[two] - table.start[one]
     cross = _cross(u, v)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 from itertools import combinations
 
 import numpy as np
@@ -13,6 +14,7 @@ from nightcap.geometry.case import Case, GroundPlane, OpenSpace
 from nightcap.geometry.crossing import CurveTable
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import Problem
+from nightcap.geometry.mesh import Ints
 from nightcap.geometry.painting import Drawing
 
 SMALLEST_GAP = 1e-6
@@ -45,49 +47,64 @@ def _boundary_name(case: Case) -> str:
 
 def _overlaps(case: Case, drawing: Drawing, faces: set[frozenset[int]]) -> Iterator[Finding]:
     """Faces that two things claim, each pair once."""
-    domain = len(drawing.drawn)
     for inside in sorted(faces, key=sorted):
-        conductors = sorted({drawing.drawn[k].conductor for k in inside if k < domain and _is_conductor(drawing, k)})
-        coats = _innermost_coats(drawing, inside - {domain})
-        for one, two in combinations(conductors, 2):
-            a, b = case.conductors[one].name, case.conductors[two].name
-            yield (a, b), f"conductors.{b}", f"overlaps conductor '{a}'; conductors must not meet"
-        for owner in conductors:
-            name = case.conductors[owner].name
-            if domain not in inside:
-                yield (name, _boundary_name(case)), f"conductors.{name}", _sticks_out(case)
-            for other, number in coats.items():
-                if other != owner:
-                    key, a = drawing.drawn[number].key, case.conductors[other].name
-                    yield (name, key), key, f"cuts into conductor '{name}'; it may touch it at most" + _room(a)
-        if domain not in inside:
-            for other, number in coats.items():
-                if other not in conductors:
-                    key = drawing.drawn[number].key
-                    yield (key, _boundary_name(case)), key, _coat_sticks_out(case)
-        for (one, first), (two, second) in combinations(sorted(coats.items()), 2):
-            if not conductors and drawing.drawn[first].material != drawing.drawn[second].material:
-                a, key = case.conductors[one].name, drawing.drawn[second].key
-                text = f"overlaps a coating of '{a}' of another material; they may touch at most"
-                yield (key, a), key, text
+        claim = _Claim.of(drawing, inside)
+        yield from _conductor_conflicts(case, drawing, claim)
+        yield from _coating_conflicts(case, drawing, claim)
 
 
-def _room(name: str) -> str:
-    return f" (move '{name}' away or make its insulation thinner)"
+@dataclass(frozen=True)
+class _Claim:
+    """What claims a face."""
+
+    conductors: tuple[int, ...]
+    coats: dict[int, int]
+    """For each conductor the innermost of its coatings that covers the face, as an outline's number."""
+    in_domain: bool
+
+    @classmethod
+    def of(cls, drawing: Drawing, inside: frozenset[int]) -> _Claim:
+        domain = len(drawing.drawn)
+        conductors, coats = set(), {}
+        for number in sorted(inside - {domain}):  # the innermost coating is painted last
+            drawn = drawing.drawn[number]
+            if drawn.conductor is not None and drawn.material is None:
+                conductors.add(drawn.conductor)
+            elif drawn.conductor is not None:
+                coats[drawn.conductor] = number
+        return cls(tuple(sorted(conductors)), coats, domain in inside)
+
+
+def _conductor_conflicts(case: Case, drawing: Drawing, claim: _Claim) -> Iterator[Finding]:
+    names = [conductor.name for conductor in case.conductors]
+    for one, two in combinations(claim.conductors, 2):
+        a, b = names[one], names[two]
+        yield (a, b), f"conductors.{b}", f"overlaps conductor '{a}'; conductors must not meet"
+    for owner in claim.conductors:
+        name = names[owner]
+        if not claim.in_domain:
+            yield (name, _boundary_name(case)), f"conductors.{name}", _sticks_out(case)
+        for other, number in claim.coats.items():
+            if other != owner:
+                key = drawing.drawn[number].key
+                text = f"cuts into conductor '{name}'; it may touch it at most (move '{names[other]}' away or make its"
+                yield (name, key), key, f"{text} insulation thinner)"
+
+
+def _coating_conflicts(case: Case, drawing: Drawing, claim: _Claim) -> Iterator[Finding]:
+    if not claim.in_domain:
+        for other, number in claim.coats.items():
+            if other not in claim.conductors:
+                key = drawing.drawn[number].key
+                yield (key, _boundary_name(case)), key, _coat_sticks_out(case)
+    for (one, first), (_, second) in combinations(sorted(claim.coats.items()), 2):
+        if not claim.conductors and drawing.drawn[first].material != drawing.drawn[second].material:
+            a, key = case.conductors[one].name, drawing.drawn[second].key
+            yield (key, a), key, f"overlaps a coating of '{a}' of another material; they may touch at most"
 
 
 def _is_conductor(drawing: Drawing, number: int) -> bool:
     return drawing.drawn[number].material is None
-
-
-def _innermost_coats(drawing: Drawing, inside: frozenset[int]) -> dict[int, int]:
-    """For each conductor the innermost of its coatings that covers a face: the outline last painted."""
-    coats: dict[int, int] = {}
-    for number in sorted(inside):
-        drawn = drawing.drawn[number]
-        if drawn.material is not None and drawn.conductor is not None:
-            coats[drawn.conductor] = number
-    return coats
 
 
 def _sticks_out(case: Case) -> str:
@@ -138,8 +155,9 @@ def _narrow_gaps(case: Case, drawing: Drawing) -> Iterator[Finding]:
     table = CurveTable([curve for _, outline in surfaces for curve in outline])
     names = [*(c.name for c in case.conductors), _boundary_name(case)]
     gaps: dict[tuple[int, int], float] = {}
-    for one, two, gap in zip(*_near_pairs(table, least), strict=True):
-        if owner[one] != owner[two] and gap < least:
+    for one, two in _near_pairs(table, owner, least):
+        gap = _distance(table, one, two)
+        if gap < least:
             pair = (min(owner[one], owner[two]), max(owner[one], owner[two]))
             gaps[pair] = min(gap, gaps.get(pair, np.inf))
     for (one, two), gap in sorted(gaps.items()):
@@ -150,28 +168,28 @@ def _narrow_gaps(case: Case, drawing: Drawing) -> Iterator[Finding]:
         yield (a, b), key, text
 
 
-def _near_pairs(table: CurveTable, margin: float) -> tuple[Floats, Floats, Floats]:
-    """Pairs of curves whose boxes come within a margin, and the distance between the curves of each, m."""
+def _near_pairs(table: CurveTable, owner: Ints, margin: float) -> list[tuple[int, int]]:
+    """Pairs of curves of two conductors whose boxes come within a margin."""
     boxes = table.boxes(margin)
-    overlap = (boxes[:, None, :2] <= boxes[None, :, 2:]).all(axis=2)
-    one, two = np.nonzero(np.triu(overlap & overlap.T, 1))
-    return one, two, np.array([_distance(table, i, j) for i, j in zip(one, two, strict=True)])
+    reaches = (boxes[:, None, :2] <= boxes[None, :, 2:]).all(axis=2)
+    near = reaches & reaches.T & (owner[:, None] < owner)
+    return [(int(one), int(two)) for one, two in np.argwhere(near)]
 
 
 def _distance(table: CurveTable, one: int, two: int) -> float:
-    """Distance of two curves that do not meet: between an end and a curve, or along the line of the centres."""
+    """Distance of two curves that do not meet: the nearest of samples, then closer and closer around them."""
     samples = np.linspace(0.0, 1.0, 257)
-    points = [_along(table, k, samples) for k in (one, two)]
-    distances, nearest = cKDTree(points[1]).query(points[0])
+    distances, nearest = cKDTree(_along(table, two, samples)).query(_along(table, one, samples))
     k = int(np.argmin(distances))
-    span = [samples[[max(i - 1, 0), min(i + 1, 256)]] for i in (k, int(nearest[k]))]
+    t, u, step = float(samples[k]), float(samples[nearest[k]]), 1 / 256
+    least = float(distances[k])
     for _ in range(12):
-        grids = [np.linspace(*s, 9) for s in span]
-        fine = [_along(table, c, g) for c, g in zip((one, two), grids, strict=True)]
-        apart = np.hypot(*(fine[0][:, None] - fine[1][None]).transpose(2, 0, 1))
-        i, j = np.unravel_index(np.argmin(apart), apart.shape)
-        span = [g[[max(m - 1, 0), min(m + 1, 8)]] for g, m in zip(grids, (i, j), strict=True)]
-    return float(apart.min())
+        around = np.linspace(-step, step, 9)
+        ts, us = np.clip(t + around, 0.0, 1.0), np.clip(u + around, 0.0, 1.0)
+        apart = np.hypot(*(_along(table, one, ts)[:, None] - _along(table, two, us)[None]).transpose(2, 0, 1))
+        i, j = np.unravel_index(int(np.argmin(apart)), apart.shape)
+        t, u, step, least = float(ts[i]), float(us[j]), step / 4, float(apart.min())
+    return least
 
 
 def _along(table: CurveTable, k: int, t: Floats) -> Floats:

@@ -93,8 +93,8 @@ def _extremes(curve: object) -> list[Point]:
     if isinstance(curve, Arc):
         low, high = sorted((curve.start_angle, curve.end_angle))
         quarter = np.pi / 2
-        for k in range(int(np.ceil(low / quarter)), int(np.floor(high / quarter)) + 1):
-            points.append(Arc(curve.centre, curve.radius, k * quarter, k * quarter).start)
+        turns = range(int(np.ceil(low / quarter)), int(np.floor(high / quarter)) + 1)
+        points += [Arc(curve.centre, curve.radius, k * quarter, k * quarter).start for k in turns]
     return points
 
 
