@@ -15,7 +15,7 @@ from scipy.spatial import cKDTree
 
 from nightcap.geometry.crossing import cut_parameters
 from nightcap.geometry.curves import Arc, Curve, Floats, Point, direction_and_bend
-from nightcap.geometry.mesh import Ints
+from nightcap.geometry.mesh import Flags, Ints
 
 Loop = tuple[int, ...]
 """Half-edges walked with their face on the left: 2 k along piece k, 2 k + 1 against it."""
@@ -106,27 +106,16 @@ class Arrangement:
     @cached_property
     def holder(self) -> dict[int, int | None]:
         """For each clockwise loop the smallest counter-clockwise one around it, or None if it lies outside all."""
-        outer = [k for k, area in enumerate(self.areas) if area > 0]
-        outer.sort(key=lambda k: self.areas[k])
-        curves = {k: [self._walked(half) for half in self.loops[k]] for k in outer}
-        boxes = {k: _box(self.points[[self.anchor_of(half) for half in self.loops[k]]], curves[k]) for k in outer}
+        outer = sorted((k for k, area in enumerate(self.areas) if area > 0), key=lambda k: self.areas[k])
+        curves = [[self._walked(half) for half in self.loops[k]] for k in outer]
+        boxes = _Boxes(curves)
+        component = np.array([self.component[self.anchor(k)] for k in outer])
         holders: dict[int, int | None] = {}
         for k, area in enumerate(self.areas):
-            if area > 0:
-                continue
-            point = self.points[self.anchor(k)]
-            own = self.component[self.anchor(k)]
-            holders[k] = next(
-                (
-                    j
-                    for j in outer
-                    if self.component[self.anchor(j)] != own
-                    and (boxes[j][0] <= point).all()
-                    and (point <= boxes[j][1]).all()
-                    and winds_around(curves[j], point)
-                ),
-                None,
-            )
+            if area <= 0:
+                point = self.points[self.anchor(k)]
+                around = np.flatnonzero(boxes.around(point) & (component != self.component[self.anchor(k)]))
+                holders[k] = next((outer[j] for j in around if winds_around(curves[j], point)), None)
         return holders
 
     def anchor_of(self, half: int) -> int:
@@ -148,13 +137,12 @@ class Arrangement:
         own: dict[int, set[int]] = {}
         for piece in self.pieces:
             own.setdefault(int(self.component[piece.start]), set()).update(k for k, _ in piece.outlines)
-        boxes = [_box(np.array([curve.start for curve in outline]), outline) for outline in outlines]
-        low, high = (np.array([box[end] for box in boxes]) for end in (0, 1))
+        boxes = _Boxes(outlines)
         queue: deque[int] = deque()
         for loop in self.holder:
             anchor = self.anchor(loop)
             point = self.points[anchor]
-            near = np.flatnonzero(((low <= point) & (point <= high)).all(axis=1))
+            near = np.flatnonzero(boxes.around(point))
             others = set(near.tolist()) - own[int(self.component[anchor])]
             found[loop] = frozenset(k for k in others if winds_around(outlines[k], point))
             queue.append(loop)
@@ -238,7 +226,20 @@ def winds_around(curves: Iterable[Curve], point: Point | Floats) -> bool:
     return abs(turn) > math.pi
 
 
-def _box(points: Floats, curves: Sequence[Curve]) -> tuple[Floats, Floats]:
-    """Low and high corner of a box around curves that start at these points."""
-    reach = max((curve.length for curve in curves if curve.curvature), default=0.0) / 2
-    return points.min(axis=0) - reach, points.max(axis=0) + reach
+class _Boxes:
+    """Boxes that hold closed chains of curves."""
+
+    def __init__(self, chains: Sequence[Sequence[Curve]]) -> None:
+        boxes = np.array([_box(chain) for chain in chains]).reshape(-1, 4)
+        self.low, self.high = boxes[:, :2], boxes[:, 2:]
+
+    def around(self, point: Floats) -> Flags:
+        """(n,) which of them hold a point."""
+        return np.asarray(((self.low <= point) & (point <= self.high)).all(axis=1))
+
+
+def _box(chain: Sequence[Curve]) -> tuple[float, float, float, float]:
+    """Low x, low y, high x, high y of a box around curves."""
+    xs, ys = zip(*(curve.start for curve in chain), strict=True)
+    reach = max((curve.length for curve in chain if curve.curvature), default=0.0) / 2
+    return (min(xs) - reach, min(ys) - reach, max(xs) + reach, max(ys) + reach)

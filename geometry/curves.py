@@ -44,9 +44,13 @@ class Curve(Protocol):
 
 def direction_and_bend(curve: Curve, from_start: bool) -> tuple[float, float]:
     """Polar angle, in [0, 2 pi), and signed curvature, 1/m, with which a curve leaves its start, or its end."""
-    sign = 1.0 if from_start else -1.0
-    x, y = sign * curve.tangent(np.array(0.0 if from_start else 1.0))
-    return math.atan2(y, x) % math.tau, sign * curve.curvature
+    if isinstance(curve, Arc):
+        quarter = math.copysign(math.pi / 2, curve.sweep)
+        angle = curve.start_angle + quarter if from_start else curve.end_angle - quarter
+    else:
+        (x0, y0), (x1, y1) = (curve.start, curve.end) if from_start else (curve.end, curve.start)
+        angle = math.atan2(y1 - y0, x1 - x0)
+    return angle % math.tau % math.tau, curve.curvature if from_start else -curve.curvature
 
 
 @dataclass(frozen=True)

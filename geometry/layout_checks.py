@@ -169,11 +169,15 @@ def _narrow_gaps(case: Case, drawing: Drawing) -> Iterator[Finding]:
 
 
 def _near_pairs(table: CurveTable, owner: Ints, margin: float) -> list[tuple[int, int]]:
-    """Pairs of curves of two conductors whose boxes come within a margin."""
+    """Pairs of curves of two conductors that may come within a margin: none does whose samples are farther apart."""
     boxes = table.boxes(margin)
     reaches = (boxes[:, None, :2] <= boxes[None, :, 2:]).all(axis=2)
-    near = reaches & reaches.T & (owner[:, None] < owner)
-    return [(int(one), int(two)) for one, two in np.argwhere(near)]
+    one, two = np.nonzero(reaches & reaches.T & (owner[:, None] < owner))
+    t = np.linspace(0.0, 1.0, 17)
+    samples = np.array([_along(table, k, t) for k in range(len(owner))])
+    apart = np.hypot(*(samples[one, :, None] - samples[two, None]).transpose(3, 0, 1, 2)).min(axis=(1, 2))
+    near = apart - (table.length[one] + table.length[two]) / 32 <= margin
+    return [(int(i), int(j)) for i, j in zip(one[near], two[near], strict=True)]
 
 
 def _distance(table: CurveTable, one: int, two: int) -> float:
