@@ -31,6 +31,29 @@ def cusp_edges(flat: Triangulation) -> Flags:
     return flags
 
 
+def with_even_cusps(layout: Layout, divisions: list[Floats]) -> list[Floats]:
+    """The divisions of the pieces with the first vertices on both sides of each cusp equally far from its point.
+
+    Where they are not, the edge between them cuts through the nearer curve, however short both are.
+    """
+    even = list(divisions)
+    for point, pair in _cusps(layout):
+        first = [_first_step(layout.pieces[k], point, even[k]) for k in pair]
+        nearest = min(first)
+        for k, distance in zip(pair, first, strict=True):
+            if distance > nearest * (1 + 1e-9):
+                piece = layout.pieces[k]
+                t = nearest / piece.curve.length
+                even[k] = np.union1d(even[k], [t if piece.start == point else 1 - t])
+    return even
+
+
+def _first_step(piece: Piece, point: int, divisions: Floats) -> float:
+    """Length of a piece from one of its ends to the first vertex on it, m."""
+    step = divisions[1] if piece.start == point else 1 - divisions[-2]
+    return float(step) * piece.curve.length
+
+
 def _cusps(layout: Layout) -> list[tuple[int, tuple[int, int]]]:
     """Points with pairs of pieces that leave them in the same direction, next to each other."""
     arms: dict[int, list[tuple[float, float, int]]] = {}

@@ -6,7 +6,7 @@ from dataclasses import fields, replace
 
 import numpy as np
 
-from nightcap.geometry.chords import Lenses, cusp_edges
+from nightcap.geometry.chords import Lenses, cusp_edges, with_even_cusps
 from nightcap.geometry.corners import with_layers
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.curving import curved_triangles
@@ -17,7 +17,7 @@ from nightcap.geometry.mesh import Ints, Mesh, Triangulation, ascending
 from nightcap.geometry.sizes import divide_pieces
 from nightcap.geometry.triangulate import triangulate
 
-ROUNDS = 30
+ROUNDS = 12
 """Each round halves the edges that were too long; what is not valid after so many never will be."""
 BLUNT = 0.75 * np.pi
 """Greatest angle between two bent edges of one triangle, radians."""
@@ -25,7 +25,7 @@ BLUNT = 0.75 * np.pi
 
 def first_mesh(layout: Layout, grading: Grading) -> Mesh:
     """Meshes a layout. Raises MeshError where no valid mesh comes out."""
-    divisions = divide_pieces(layout, grading)
+    divisions = with_even_cusps(layout, divide_pieces(layout, grading))
     for _ in range(ROUNDS):
         flat, spans = with_layers(*triangulate(layout, divisions), grading)
         turns = _turns(flat, spans)
@@ -45,7 +45,7 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
                 engulfed_by=lenses.conductor(flat),
                 grading=grading,
             )
-        divisions = _halved(divisions, flat, spans, offenders)
+        divisions = with_even_cusps(layout, _halved(divisions, flat, spans, offenders))
     raise MeshError("no valid mesh found: two curves come too close to each other")
 
 
