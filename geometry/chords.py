@@ -7,12 +7,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats, direction_and_bend
+from nightcap.geometry.curves import SAME_DIRECTION, Floats, direction_and_bend
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Flags, Ints, Triangulation
-
-SAME_DIRECTION = 1e-6
-"""Two curves that leave a point at less than this angle form a cusp, radians."""
 
 
 def cusp_edges(flat: Triangulation) -> Flags:

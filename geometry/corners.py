@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Ints, Triangulation, ascending
@@ -20,9 +20,8 @@ def corner_sizes(layout: Layout, grading: Grading) -> dict[int, float]:
     """The points of a layout where the field is not smooth, and the edge length, m, wanted at each."""
     arms: dict[int, list[tuple[float, Piece]]] = {}
     for piece in layout.pieces:
-        for point, t, sense in ((piece.start, 0.0, 1.0), (piece.end, 1.0, -1.0)):
-            direction = sense * piece.curve.tangent(np.array(t))
-            arms.setdefault(point, []).append((math.atan2(direction[1], direction[0]), piece))
+        for point, from_start in ((piece.start, True), (piece.end, False)):
+            arms.setdefault(point, []).append((direction_and_bend(piece.curve, from_start)[0], piece))
     sizes = {}
     for point, meeting in arms.items():
         fraction = _fraction(meeting, grading)
@@ -140,5 +139,4 @@ def _dielectric_angle(meeting: list[tuple[float, Piece]]) -> float:
 
 
 def _leaves_along(angle: float, piece: Piece) -> bool:
-    direction = piece.curve.tangent(np.array(0.0))
-    return abs(math.remainder(math.atan2(direction[1], direction[0]) - angle, math.tau)) < 1e-9
+    return abs(math.remainder(direction_and_bend(piece.curve, True)[0] - angle, math.tau)) < 1e-9

@@ -42,6 +42,10 @@ class Curve(Protocol):
         """The piece between two parameters, t0 < t1."""
 
 
+SAME_DIRECTION = 1e-6
+"""Two curves that leave a point at less than this angle form a cusp, radians."""
+
+
 def direction_and_bend(curve: Curve, from_start: bool) -> tuple[float, float]:
     """Polar angle, in [0, 2 pi), and signed curvature, 1/m, with which a curve leaves its start, or its end."""
     if isinstance(curve, Arc):

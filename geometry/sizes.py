@@ -7,7 +7,7 @@ import math
 import numpy as np
 
 from nightcap.geometry.corners import corner_sizes
-from nightcap.geometry.curves import Floats, Segment
+from nightcap.geometry.curves import SAME_DIRECTION, Floats, Segment, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Ints
@@ -164,10 +164,5 @@ def _counts(piece: Piece, other: Piece) -> bool:
 
 
 def _forms_cusp(piece: Piece, other: Piece, point: int) -> bool:
-    one, two = (_outgoing(p, point) for p in (piece, other))
-    return float(one @ two) > 1 - 1e-9
-
-
-def _outgoing(piece: Piece, point: int) -> Floats:
-    at_start = piece.start == point
-    return piece.curve.tangent(np.array(0.0 if at_start else 1.0)) * (1.0 if at_start else -1.0)
+    one, two = (direction_and_bend(p.curve, p.start == point)[0] for p in (piece, other))
+    return abs(math.remainder(one - two, math.tau)) < SAME_DIRECTION
