@@ -48,7 +48,8 @@ def next_step(fields: Fields, accuracy: float) -> Step:
         return Step(order, first_mesh(fields.mesh.layout, grading), f"contacts graded to {contact:.1e}")
     blamed = _blamed(fields, accuracy)
     if blamed.mean() > WIDESPREAD and order < HIGHEST_ORDER:
-        higher = min(order + (2 if excess < 1e3 else 4), HIGHEST_ORDER)
+        steps = next((k for k, most in ((1, 5.0), (2, 1e3)) if excess < most), 4)  # one order gains about a digit
+        higher = min(order + steps, HIGHEST_ORDER)
         return Step(higher, fields.mesh, f"order {order} to {higher}")
     mesh = _split(fields.mesh, blamed)
     return Step(order, mesh, f"{np.count_nonzero(blamed)} triangles split")
