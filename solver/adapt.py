@@ -30,7 +30,7 @@ class Step:
 
 def first_order(accuracy: float) -> int:
     """Order of the first round, MEASURED to be the cheapest that mostly meets the accuracy at once."""
-    return next((order for order, least in ((3, 3e-4), (4, 3e-6), (5, 3e-7)) if accuracy >= least), 6)
+    return next((order for order, least in ((3, 3e-4), (4, 3e-6), (5, 2e-6)) if accuracy >= least), 6)
 
 
 def next_step(fields: Fields, accuracy: float) -> Step:
