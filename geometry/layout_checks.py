@@ -24,7 +24,7 @@ SMALLEST_GAP = 1e-6
 def find_problems(
     case: Case, drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]
 ) -> tuple[Problem, ...]:
-    """Every geometric mistake once, in the order of the case's conductors.
+    """Every geometric mistake once, in the order of the file.
 
     members : for each loop of the arrangement the outlines around the face on its left.
     """
@@ -34,7 +34,8 @@ def find_problems(
     found |= dict.fromkeys(contacts)
     touching = overlapping | {c[0] for c in contacts}
     found |= dict.fromkeys(c for c in _narrow_gaps(case, drawing) if c[0] not in touching)
-    return tuple(case.source.problem(key, text) for _, key, text in found)
+    problems = [case.source.problem(key, text) for _, key, text in found]
+    return tuple(sorted(problems, key=lambda problem: problem.line or 0))
 
 
 Finding = tuple[tuple[str, str], str, str]

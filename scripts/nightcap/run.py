@@ -57,7 +57,8 @@ def _make_folder(out: Path) -> None:
     try:
         out.mkdir(parents=True, exist_ok=True)
     except OSError as error:
-        raise UsageError(f"{out}: {error.strerror}") from error
+        said = "is a file, not a folder" if out.is_file() else error.strerror
+        raise UsageError(f"{out}: {said}") from error
 
 
 def _closing(results: Sequence[Result], out: Path) -> Iterator[str]:
