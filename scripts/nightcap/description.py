@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
+from collections.abc import Iterator, Sized
 from functools import singledispatch
 
 from nightcap.digits import grouped
@@ -34,9 +34,13 @@ def description(case: Case, layout: Layout) -> Iterator[str]:
         exact = ", exact" if case.expect.exact else ""
         yield f"  expects: {case.expect.source} (tolerance {case.expect.tolerance:.3g}{exact})"
     yield (
-        f"  layout: {len(layout.regions)} regions, {len(layout.materials)} materials,"
-        f" {len(layout.pieces)} curves, {length_text(layout.size)} across"
+        f"  layout: {_count(layout.regions, 'region')}, {_count(layout.materials, 'material')},"
+        f" {_count(layout.pieces, 'curve')}, {length_text(layout.size)} across"
     )
+
+
+def _count(things: Sized, word: str) -> str:
+    return f"{len(things)} {word}{'' if len(things) == 1 else 's'}"
 
 
 @singledispatch

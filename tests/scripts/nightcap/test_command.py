@@ -186,4 +186,4 @@ def test_check_says_what_it_understood(coax: Path, capsys: pytest.CaptureFixture
     out = capsys.readouterr().out
     assert "core: circle, diameter 2 mm, at (0 mm, 0 mm)" in out
     assert "shield 'screen', inside: circle, diameter 4 mm" in out
-    assert "1 regions" in out
+    assert "1 region," in out
