@@ -106,11 +106,22 @@ class Source:
     """Dotted key path to line number, counted from 1."""
 
     def problem(self, key: str, text: str) -> Problem:
-        """A mistake at a key; if the key itself has no line, that of the nearest key above it."""
-        path = key
-        while path and path not in self.lines:
-            path = path[: max(path.rfind("."), path.rfind("["), 0)]
-        return Problem(self.file, self.lines.get(path), key, text)
+        """A mistake at a key; if the key itself has no line, that of the nearest key above it.
+
+        What a construction draws has no lines of its own: the construction is to blame.
+        """
+        group, _, name = key.partition(".")
+        drawn = f"constructions.{name}"
+        unwritten = group in ("conductors", "dielectrics") and self._written(key) in (group, "")
+        if unwritten and "." in self._written(drawn):
+            key = drawn
+        return Problem(self.file, self.lines.get(self._written(key)), key, text)
+
+    def _written(self, key: str) -> str:
+        """The nearest key that has a line, or nothing."""
+        while key and key not in self.lines:
+            key = key[: max(key.rfind("."), key.rfind("["), 0)]
+        return key
 
 
 @dataclass(frozen=True)

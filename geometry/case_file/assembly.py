@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from typing import Any
 
 from nightcap.geometry.case import (
     Boundary,
     Case,
-    Coating,
     Conductor,
     Dielectric,
     Expectation,
@@ -19,11 +19,13 @@ from nightcap.geometry.case import (
 )
 from nightcap.geometry.case_file.boundaries import read_boundary
 from nightcap.geometry.case_file.consistency import check_case, check_name
+from nightcap.geometry.case_file.constructions import read_constructions
+from nightcap.geometry.case_file.constructions.built import Built
+from nightcap.geometry.case_file.layers import read_coatings
 from nightcap.geometry.case_file.problems import Problems, under
 from nightcap.geometry.case_file.quantities import LENGTHS
 from nightcap.geometry.case_file.schema import (
     CaseEntry,
-    CoatingEntry,
     ConductorKeys,
     ExpectEntry,
     LimitsEntry,
@@ -35,16 +37,13 @@ from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.shapes import Polygon
 
-MOST_LAYERS = 20
-
 
 def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
     """Builds the case. Raises CaseError with every mistake of the file."""
     unit = tree.get("units")
     context = {"unit": LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3}
     entry = checked(CaseEntry, tree, "", problems, context)
-    conductors = _conductors(tree.get("conductors"), problems, context)
-    dielectrics = _dielectrics(tree.get("dielectrics"), problems, context)
+    conductors, dielectrics = _drawn(tree, problems, context)
     background = _background(tree.get("background"), problems, context)
     boundary = read_boundary(tree["boundary"], "boundary", problems, context) if "boundary" in tree else None
     limits = _limits(tree.get("limits"), problems, context)
@@ -90,35 +89,42 @@ def _entries(tree: Tree, path: str, problems: Problems) -> dict[str, Tree]:
     return tree
 
 
+def _drawn(
+    tree: dict[str, Tree], problems: Problems, context: dict[str, Any]
+) -> tuple[tuple[Conductor, ...], tuple[Dielectric, ...]]:
+    """All conductors and dielectrics, those of constructions after the others."""
+    conductors = _conductors(tree.get("conductors"), problems, context)
+    dielectrics = _dielectrics(tree.get("dielectrics"), problems, context)
+    drawn = {one.name: Built((one,)) for one in conductors} | {one.name: Built((), (one,)) for one in dielectrics}
+    constructions = _entries(tree.get("constructions"), "constructions", problems)
+    for name in constructions:
+        if name in drawn:
+            problems.add(under("constructions", name), f"'{name}' is the name of a conductor or dielectric already")
+    built = read_constructions(constructions, drawn, problems, context)
+    conductors += built.conductors
+    for name in [name for name, count in Counter(one.name for one in conductors).items() if count > 1]:
+        problems.add(under("conductors", name), f"two conductors have the name '{name}'")
+    if "conductors" not in tree and "constructions" not in tree:
+        problems.add("", "the key 'conductors' is missing")
+    elif not conductors and not problems.found:
+        problems.add("conductors", "there must be at least one conductor")
+    return conductors, dielectrics + built.dielectrics
+
+
 def _conductors(tree: Tree, problems: Problems, context: dict[str, Any]) -> tuple[Conductor, ...]:
     conductors = []
     entries = _entries(tree, "conductors", problems)
-    if not entries and (tree is None or isinstance(tree, dict)):
-        problems.add("conductors", "there must be at least one conductor")
     for name, entry in entries.items():
         path = under("conductors", name)
         read = shaped(ConductorKeys, entry, path, problems, context)
         coats = entry.get("coatings") if isinstance(entry, dict) else None
-        coatings = _coatings(coats, under(path, "coatings"), problems, context)
+        coatings = read_coatings(coats, under(path, "coatings"), problems, context)
         if read:
             keys, shape = read
             if coatings and isinstance(shape, Polygon) and not shape.is_convex:
                 problems.add(under(path, "coatings"), "a coating can be laid around a convex polygon only")
             conductors.append(Conductor(name, shape, coatings, keys.floating))
     return tuple(conductors)
-
-
-def _coatings(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> tuple[Coating, ...]:
-    if tree is None:
-        return ()
-    if not isinstance(tree, list):
-        problems.add(path, "must be a list of layers, e.g. [{thickness: 0.2, permittivity: 2.3}]")
-        return ()
-    if len(tree) > MOST_LAYERS:
-        problems.add(path, f"must be at most {MOST_LAYERS} layers")
-        return ()
-    read = [checked(CoatingEntry, layer, under(path, k), problems, context) for k, layer in enumerate(tree)]
-    return tuple(Coating(layer.thickness, layer.record()) for layer in read if layer)
 
 
 def _dielectrics(tree: Tree, problems: Problems, context: dict[str, Any]) -> tuple[Dielectric, ...]:
