@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 
 class NightcapError(Exception):
@@ -22,6 +22,8 @@ class Problem:
     """Dotted key path, e.g. ``conductors.red.coatings[0].thickness``."""
     text: str
     """What is wrong, what is allowed and, where there is one, the nearest valid name."""
+    place: tuple[float, float] | None = field(default=None, compare=False)
+    """Where in the cross-section, m, for drawings."""
 
     def __str__(self) -> str:
         place = self.file if self.line is None else f"{self.file}:{self.line}"

@@ -31,6 +31,9 @@ CHECK_EXAMPLES = """\
 examples:
   nightcap check pair.yaml      says what it understood, or every mistake with its line
   nightcap check cases/         the same for every *.yaml and *.yml below cases/
+  nightcap check pair.yaml --draw looks
+      and writes looks/pair/drawing.svg and drawing.png: the cross-section to
+      scale, with names, dimensions and, where something is wrong, a mark
 """
 
 
@@ -79,6 +82,7 @@ def _add_check(commands: argparse._SubParsersAction[argparse.ArgumentParser]) ->
         formatter_class=argparse.RawDescriptionHelpFormatter,
     )
     _add_paths(check)
+    check.add_argument("--draw", type=Path, metavar="DIR", help="folder that receives a drawing of each case")
 
 
 def _add_paths(parser: argparse.ArgumentParser) -> None:

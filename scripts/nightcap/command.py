@@ -44,7 +44,7 @@ def _run(options: Namespace) -> bool:
 def _check(options: Namespace) -> bool:
     from nightcap.check import check
 
-    return check(options.paths)
+    return check(options.paths, options.draw)
 
 
 COMMANDS: dict[str, Callable[[Namespace], bool]] = {"run": _run, "check": _check}

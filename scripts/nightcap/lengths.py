@@ -12,9 +12,9 @@ class LengthUnit:
     symbol: str
     metres: float
 
-    def text(self, length: float) -> str:
+    def text(self, length: float, digits: int = 6) -> str:
         """A length (m) in this unit, without the symbol."""
-        return f"{length / self.metres:.6g}"
+        return f"{length / self.metres:.{digits}g}"
 
 
 UNITS = (LengthUnit("nm", 1e-9), LengthUnit("um", 1e-6), LengthUnit("mm", 1e-3), LengthUnit("m", 1.0))
@@ -32,3 +32,9 @@ def length_text(length: float) -> str:
     """A length (m) with the unit that suits it."""
     unit = fitting_unit(abs(length) if length else 1e-3)
     return f"{unit.text(length)} {unit.symbol}"
+
+
+def rounded_length(length: float) -> str:
+    """The same with four digits, for drawings."""
+    unit = fitting_unit(abs(length) if length else 1e-3)
+    return f"{unit.text(length, 4)} {unit.symbol}"

@@ -86,7 +86,7 @@ def _frame(axes: Axes, drawing: Drawing, view: View) -> None:
     for axis, name in ((axes.xaxis, "x"), (axes.yaxis, "y")):
         axis.set_major_formatter(_in_unit(unit))
         axis.set_label_text(f"{name}, {unit.symbol}")
-    axes.set_title(_literal(drawing.case.title), fontsize=10, wrap=True)
+    axes.set_title(literal(drawing.case.title), fontsize=10, wrap=True)
 
 
 def _in_unit(unit: LengthUnit) -> Any:
@@ -97,12 +97,12 @@ def _in_unit(unit: LengthUnit) -> Any:
 
 def _materials(axes: Axes, drawing: Drawing, view: View) -> None:
     for region in drawing.layout.regions:
-        tone, hatch = _style(region.material)
+        tone, hatch = style_of(region.material)
         style = {"facecolor": tone, "edgecolor": HATCH, "hatch": hatch, "linewidth": 0}
         if region.far:
             axes.add_patch(_beyond_rim(drawing.case, view, zorder=0, **style))
         else:
-            axes.add_patch(_filled(region_loops(drawing.layout, region), zorder=1, **style))
+            axes.add_patch(filled(region_loops(drawing.layout, region), zorder=1, **style))
     for line in interface_lines(drawing.layout):
         axes.plot(*line.T, color="0.4", linewidth=0.6, zorder=2)
 
@@ -115,11 +115,13 @@ def _beyond_rim(case: Case, view: View, **style: Any) -> Any:
     return Rectangle((view.left, bottom), view.width, view.top - bottom, **style)
 
 
-def _style(material: int) -> tuple[str, str]:
+def style_of(material: int) -> tuple[str, str]:
+    """Tone and hatch of a material, by its number."""
     return STYLES[material % len(STYLES)]
 
 
-def _filled(loops: list[Floats], **style: Any) -> Any:
+def filled(loops: list[Floats], **style: Any) -> Any:
+    """A patch inside closed polygons, and outside of those that run the other way."""
     from matplotlib.patches import PathPatch
     from matplotlib.path import Path as Outline
 
@@ -175,8 +177,8 @@ def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
     for k, name in enumerate(layout.conductors):
         if name in drawn:
             loops = conductor_loops(layout, k)
-            axes.add_patch(_filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
-            axes.add_patch(_filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
+            axes.add_patch(filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
+            axes.add_patch(filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
             _name(axes, name, np.concatenate(loops), view)
         else:
             for line in _outer_surface(drawing, k, view):
@@ -197,7 +199,7 @@ def _name(axes: Axes, name: str, outline: Floats, view: View) -> None:
     points_per_metre = 72 * (WIDTH - 1.0) / view.width
     fits = 5.0 * len(name) < points_per_metre * (high[0] - low[0]) and points_per_metre * (high[1] - low[1]) > 12
     axes.annotate(
-        _literal(name),
+        literal(name),
         xy=((low[0] + high[0]) / 2, (low[1] + high[1]) / 2 if fits else high[1]),
         xytext=(0, 0 if fits else 3),
         textcoords="offset points",
@@ -238,12 +240,12 @@ def _legend(figure: Figure, drawing: Drawing) -> None:
     used = sorted({region.material for region in layout.regions if not region.far})
     handles: list[Any] = [Patch(facecolor=METAL, edgecolor="0.45", hatch="//////", label=_conductor_label(drawing))]
     for k in used:
-        tone, hatch = _style(k)
+        tone, hatch = style_of(k)
         material = layout.materials[k]
-        label = f"{_literal(material.name)} " if material.name else ""
+        label = f"{literal(material.name)} " if material.name else ""
         label += rf"$\varepsilon_r$ = {material.permittivity:.4g}"
         handles.append(Patch(facecolor=tone, edgecolor="0.5", hatch=hatch, label=label))
-    driven = _literal(drawing.conductors[0])
+    driven = literal(drawing.conductors[0])
     handles.append(Line2D([], [], color=HUE, linewidth=0.9, label=f"equipotentials: {driven} at 1 V, others 0 V"))
     handles.append(
         Line2D(
@@ -254,10 +256,10 @@ def _legend(figure: Figure, drawing: Drawing) -> None:
 
 
 def _conductor_label(drawing: Drawing) -> str:
-    reference = _literal(drawing.layout.conductors[drawing.layout.reference])
+    reference = literal(drawing.layout.conductors[drawing.layout.reference])
     return f"conductors; reference, 0 V: {reference}"
 
 
-def _literal(text: str) -> str:
+def literal(text: str) -> str:
     """Text that is not read as a formula."""
     return text.replace("$", r"\$")

@@ -1,0 +1,210 @@
+"""drawing.svg and drawing.png: what a case file draws, to scale and with dimensions, before anything is solved."""
+
+from __future__ import annotations
+
+import io
+from collections.abc import Sequence
+from itertools import pairwise
+from pathlib import Path
+from textwrap import wrap
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from nightcap.geometry.case import Case, Material, OpenSpace
+from nightcap.geometry.curves import Floats, Point
+from nightcap.geometry.errors import Problem
+from nightcap.geometry.painting import Drawing, paint
+from nightcap.geometry.shapes import Outline
+from nightcap.lengths import rounded_length
+from nightcap.outputs.labels import Labels
+from nightcap.outputs.measures import Measure, measures
+from nightcap.outputs.outlines import points_along
+from nightcap.outputs.picture import METAL, filled, literal, style_of
+from nightcap.whole_file import write_whole
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.figure import Figure
+
+FILES = ("drawing.svg", "drawing.png")
+WIDTH, TALLEST = 7.0, 7.0
+"""Of the drawing itself, inches."""
+MARGIN = 0.2
+"""Room around the figures for dimensions, as a fraction of their extent."""
+WRONG = "#d55e00"
+"""One vermilion, for mistakes: apart from the greys for every kind of colour vision."""
+
+
+def write_sheet(case: Case, problems: Sequence[Problem], folder: Path) -> None:
+    """Writes both files, each whole or not at all. Raises OSError.
+
+    problems : geometric mistakes, which are marked where they are.
+    """
+    from matplotlib import rc_context
+
+    folder.mkdir(parents=True, exist_ok=True)
+    with rc_context({"font.size": 8, "hatch.linewidth": 0.5, "svg.fonttype": "none", "svg.hashsalt": "nightcap"}):
+        figure = _figure(case, problems)
+        for name in FILES:
+            content = io.BytesIO()
+            suffix = name.rpartition(".")[2]
+            figure.savefig(content, format=suffix, dpi=150, metadata={"Date": None} if suffix == "svg" else None)
+            write_whole(folder / name, content.getvalue())
+
+
+def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
+    from matplotlib.backends.backend_agg import FigureCanvasAgg
+    from matplotlib.figure import Figure
+
+    drawing = paint(case)
+    low, high = _extent(case, drawing)
+    room = MARGIN * float((high - low).max())
+    width, height = (high - low + 2 * room).tolist()
+    marked, palette = measures(case, drawing), _palette(case, drawing)
+    notes = _notes(marked, problems)
+    shape = (min(WIDTH * height / width, TALLEST), 0.2 + 0.14 * len(notes))
+    figure = Figure(figsize=(WIDTH, sum(shape) + 0.9), layout="constrained")
+    FigureCanvasAgg(figure)
+    axes, text = figure.subplots(2, height_ratios=shape)
+    axes.set_aspect("equal")
+    axes.set_xlim(low[0] - room, high[0] + room)
+    axes.set_ylim(low[1] - room, high[1] + room)
+    axes.set_title(literal(case.title), fontsize=10, wrap=True)
+    labels = Labels(axes, 72 * min(WIDTH / width, TALLEST / height))
+    _paint(axes, case, drawing, palette)
+    _overall(axes, low, high, room)
+    _flags(axes, problems, labels)
+    for measure in marked:
+        _mark(axes, measure, labels)
+    _names(case, labels)
+    text.text(0.0, 1.0, literal("\n".join(notes)), fontsize=7, va="top", transform=text.transAxes)
+    for part in (axes, text):
+        part.set_axis_off()
+    _legend(figure, palette)
+    return figure
+
+
+def _extent(case: Case, drawing: Drawing) -> tuple[Floats, Floats]:
+    """Corners of the box around all that is drawn, the shield included."""
+    outlines = [drawn.outline for drawn in drawing.drawn]
+    if drawing.rim is None:
+        outlines.append(drawing.domain)
+    elif not isinstance(case.boundary, OpenSpace):
+        (x, y), _ = drawing.rim
+        ends = np.array([[x, y], [x, y]])
+        points = np.concatenate([ends, *(points_along(curve) for outline in outlines for curve in outline)])
+        return points.min(axis=0), points.max(axis=0)
+    points = np.concatenate([points_along(curve) for outline in outlines for curve in outline])
+    return points.min(axis=0), points.max(axis=0)
+
+
+def _palette(case: Case, drawing: Drawing) -> list[Material]:
+    """The materials, each once, the background first."""
+    return list(dict.fromkeys([case.background, *(d.material for d in drawing.drawn if d.material is not None)]))
+
+
+def _paint(axes: Axes, case: Case, drawing: Drawing, palette: list[Material]) -> None:
+    """Figure over figure, in the order in which they cover each other."""
+    if drawing.rim is None:
+        tone, hatch = style_of(0)
+        loops = loops_of(drawing.domain)
+        axes.add_patch(filled(loops, facecolor=tone, edgecolor="0.72", hatch=hatch, linewidth=0, zorder=1))
+        axes.add_patch(filled(loops, fill=False, edgecolor="0.1", linewidth=2.0, zorder=1.5))
+    elif not isinstance(case.boundary, OpenSpace):
+        axes.axhline(drawing.rim[0][1], color="0.1", linewidth=2.0, zorder=1.5)
+    for order, drawn in enumerate(drawing.drawn):
+        tone, hatch = (METAL, "//////") if drawn.material is None else style_of(palette.index(drawn.material))
+        loops, level = loops_of(drawn.outline), 2 + order * 1e-3
+        axes.add_patch(filled(loops, facecolor=tone, edgecolor="0.72", hatch=hatch, linewidth=0, zorder=level))
+        line = 0.9 if drawn.material is None else 0.6
+        axes.add_patch(filled(loops, fill=False, edgecolor="0.15", linewidth=line, zorder=level + 5e-4))
+
+
+def _names(case: Case, labels: Labels) -> None:
+    """Names of conductors, where there is room."""
+    for conductor in case.conductors:
+        points = np.concatenate([points_along(curve) for curve in conductor.shape.outline()])
+        low, high = points.min(axis=0), points.max(axis=0)
+        labels.put(conductor.name, (low + high) / 2)
+
+
+def loops_of(outline: Outline) -> list[Floats]:
+    """The closed polygons of an outline, which may have holes."""
+    size = sum(curve.length for curve in outline)
+    loops: list[list[Floats]] = [[points_along(outline[0])[:-1]]]
+    for before, curve in pairwise(outline):
+        if np.hypot(*np.subtract(curve.start, before.end)) > 1e-9 * size:
+            loops.append([])
+        loops[-1].append(points_along(curve)[:-1])
+    return [np.concatenate(loop) for loop in loops]
+
+
+def _overall(axes: Axes, low: Floats, high: Floats, room: float) -> None:
+    """Overall width below, overall height on the left."""
+    x, y = low - 0.5 * room
+    _dimension(axes, (low[0], y), (high[0], y), rounded_length(float(high[0] - low[0])))
+    _dimension(axes, (x, low[1]), (x, high[1]), rounded_length(float(high[1] - low[1])), rotation=90)
+    for ends in (((low[0], low[1]), (low[0], y)), ((high[0], low[1]), (high[0], y))):
+        axes.plot(*np.array(ends).T, color="0.4", linewidth=0.4, zorder=0.5)
+    for ends in (((low[0], low[1]), (x, low[1])), ((low[0], high[1]), (x, high[1]))):
+        axes.plot(*np.array(ends).T, color="0.4", linewidth=0.4, zorder=0.5)
+
+
+def _dimension(axes: Axes, start: Any, end: Any, text: str, rotation: float = 0.0) -> None:
+    style = {"arrowstyle": "<->", "color": "0.1", "linewidth": 0.8, "shrinkA": 0, "shrinkB": 0}
+    axes.annotate("", xy=end, xytext=start, arrowprops=style, zorder=7)
+    box = {"facecolor": "white", "edgecolor": "none", "pad": 1.0}
+    middle = (np.array(start) + np.array(end)) / 2
+    axes.text(
+        float(middle[0]),
+        float(middle[1]),
+        text,
+        fontsize=8,
+        ha="center",
+        va="center",
+        rotation=rotation,
+        bbox=box,
+        zorder=8,
+    )
+
+
+def _mark(axes: Axes, measure: Measure, labels: Labels) -> None:
+    """Both ends of a small dimension, with its length beside."""
+    ends = np.array(measure.ends)
+    axes.plot(*ends.T, color="black", linewidth=1.0, marker="|", markersize=5, zorder=9)
+    labels.put(rounded_length(measure.length), ends.mean(axis=0), apart=True)
+
+
+def _flags(axes: Axes, problems: Sequence[Problem], labels: Labels) -> None:
+    """A ring around each place where something is wrong, with the numbers of the mistakes there."""
+    numbers: dict[Point, list[str]] = {}
+    for number, problem in enumerate(problems, start=1):
+        if problem.place:
+            numbers.setdefault(problem.place, []).append(str(number))
+    ring: dict[str, Any] = {"marker": "o", "markersize": 20, "markerfacecolor": "none", "zorder": 10}
+    for place, there in numbers.items():
+        axes.plot(*place, **ring, markeredgecolor="white", markeredgewidth=4.5)
+        axes.plot(*place, **ring, markeredgecolor=WRONG, markeredgewidth=2.2)
+        labels.put(f"({', '.join(there)})", np.array(place), apart=True, color=WRONG)
+
+
+def _notes(marked: Sequence[Measure], problems: Sequence[Problem]) -> list[str]:
+    """The lengths that are marked, and what is wrong."""
+    lines = [f"{measure.what}: {rounded_length(measure.length)}" for measure in marked]
+    for number, problem in enumerate(problems, start=1):
+        lines += wrap(f"({number}) {problem.key}: {problem.text}", 125, subsequent_indent="      ")
+    return lines
+
+
+def _legend(figure: Figure, palette: list[Material]) -> None:
+    """Materials by tone and hatch."""
+    from matplotlib.patches import Patch
+
+    handles = [Patch(facecolor=METAL, edgecolor="0.45", hatch="//////", label="conductor")]
+    for k, material in enumerate(palette):
+        tone, hatch = style_of(k)
+        name = f"{literal(material.name)} " if material.name else ""
+        label = rf"{name}$\varepsilon_r$ = {material.permittivity:.4g}"
+        handles.append(Patch(facecolor=tone, edgecolor="0.5", hatch=hatch, label=label))
+    figure.legend(handles=handles, loc="outside lower center", ncols=3, frameon=False, fontsize=7)
