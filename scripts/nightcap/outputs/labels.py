@@ -6,7 +6,6 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from nightcap.geometry.curves import Floats
-from nightcap.outputs.picture import literal
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -66,3 +65,8 @@ class Labels:
 
 def _meet(one: Box, two: Box) -> bool:
     return one[0] < two[2] and two[0] < one[2] and one[1] < two[3] and two[1] < one[3]
+
+
+def literal(text: str) -> str:
+    """Text that is not read as a formula."""
+    return text.replace("$", r"\$")

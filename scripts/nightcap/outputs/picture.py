@@ -13,6 +13,7 @@ from nightcap.geometry.curves import Floats
 from nightcap.lengths import LengthUnit, fitting_unit
 from nightcap.outputs.drawing import Drawing, View, view_of
 from nightcap.outputs.field_lines import field_lines, flux_sheet, unfolded
+from nightcap.outputs.labels import Labels, literal
 from nightcap.outputs.outlines import conductor_loops, interface_lines, region_loops, surface_lines
 from nightcap.result import Result
 from nightcap.whole_file import write_whole
@@ -172,14 +173,14 @@ def _draw_equipotentials(axes: Axes, corners: Floats, labels: Any, potential: Fl
 
 def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
     """Filled and named; a shield or a plane, whose inside is everything beyond, as a band along its surface."""
-    layout = drawing.layout
+    layout, labels = drawing.layout, Labels(axes, 72 * (WIDTH - 1.0) / view.width)
     drawn = {conductor.name for conductor in drawing.case.conductors}
     for k, name in enumerate(layout.conductors):
         if name in drawn:
             loops = conductor_loops(layout, k)
             axes.add_patch(filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
             axes.add_patch(filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
-            _name(axes, name, np.concatenate(loops), view)
+            _name(labels, name, np.concatenate(loops))
         else:
             for line in _outer_surface(drawing, k, view):
                 axes.plot(*line.T, color=METAL, linewidth=9, solid_capstyle="round", zorder=0.5)
@@ -193,23 +194,12 @@ def _outer_surface(drawing: Drawing, conductor: int, view: View) -> list[Floats]
     return surface_lines(drawing.layout, conductor)
 
 
-def _name(axes: Axes, name: str, outline: Floats, view: View) -> None:
-    """On the conductor where it fits, else above it."""
+def _name(labels: Labels, name: str, outline: Floats) -> None:
+    """On the conductor where it fits, else beside it, else not at all."""
     low, high = outline.min(axis=0), outline.max(axis=0)
-    points_per_metre = 72 * (WIDTH - 1.0) / view.width
-    fits = 5.0 * len(name) < points_per_metre * (high[0] - low[0]) and points_per_metre * (high[1] - low[1]) > 12
-    axes.annotate(
-        literal(name),
-        xy=((low[0] + high[0]) / 2, (low[1] + high[1]) / 2 if fits else high[1]),
-        xytext=(0, 0 if fits else 3),
-        textcoords="offset points",
-        horizontalalignment="center",
-        verticalalignment="center" if fits else "bottom",
-        fontsize=7,
-        bbox={"boxstyle": "round,pad=0.15", "facecolor": "white", "edgecolor": "none", "alpha": 0.85},
-        annotation_clip=True,
-        zorder=8,
-    )
+    width, height = (labels.scale * (high - low)).tolist()
+    fits = 5.0 * len(name) < width and height > 12
+    labels.put(name, (low + high) / 2, apart=not fits)
 
 
 def _scale_bar(axes: Axes, view: View) -> None:
@@ -258,8 +248,3 @@ def _legend(figure: Figure, drawing: Drawing) -> None:
 def _conductor_label(drawing: Drawing) -> str:
     reference = literal(drawing.layout.conductors[drawing.layout.reference])
     return f"conductors; reference, 0 V: {reference}"
-
-
-def literal(text: str) -> str:
-    """Text that is not read as a formula."""
-    return text.replace("$", r"\$")

@@ -17,10 +17,10 @@ from nightcap.geometry.errors import Problem
 from nightcap.geometry.painting import Drawing, paint
 from nightcap.geometry.shapes import Outline
 from nightcap.lengths import rounded_length
-from nightcap.outputs.labels import Labels
+from nightcap.outputs.labels import Labels, literal
 from nightcap.outputs.measures import Measure, measures
 from nightcap.outputs.outlines import points_along
-from nightcap.outputs.picture import METAL, filled, literal, style_of
+from nightcap.outputs.picture import METAL, filled, style_of
 from nightcap.whole_file import write_whole
 
 if TYPE_CHECKING:
