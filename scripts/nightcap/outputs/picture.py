@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 from pathlib import Path
+from textwrap import fill
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -20,7 +21,6 @@ from nightcap.whole_file import write_whole
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
-    from matplotlib.figure import Figure
 
 DOTS_PER_INCH = 150
 WIDTH = 6.4
@@ -60,7 +60,8 @@ def png(drawing: Drawing) -> bytes:
 
     view = view_of(drawing.case)
     with rc_context({"font.size": 8, "hatch.linewidth": 0.5}):
-        figure = Figure(figsize=(WIDTH, _height(view)), dpi=DOTS_PER_INCH, layout="constrained")
+        legend = _legend(drawing)
+        figure = Figure(figsize=(WIDTH, _height(view, len(legend))), dpi=DOTS_PER_INCH, layout="constrained")
         FigureCanvasAgg(figure)
         axes = figure.add_subplot()
         _frame(axes, drawing, view)
@@ -68,15 +69,15 @@ def png(drawing: Drawing) -> bytes:
         _fields(axes, drawing, view)
         _conductors(axes, drawing, view)
         _scale_bar(axes, view)
-        _legend(figure, drawing)
+        figure.legend(handles=legend, loc="outside lower center", ncols=2, frameon=False, fontsize=7)
         content = io.BytesIO()
         figure.savefig(content, format="png")
     return content.getvalue()
 
 
-def _height(view: View) -> float:
-    """Inches, from a flat strip to a tall one, with room for title, axis and legend."""
-    return float(np.clip((WIDTH - 1.0) * view.height / view.width, 1.6, 8.0)) + 1.7
+def _height(view: View, legend: int) -> float:
+    """Inches, from a flat strip to a tall one, with room for title, axis and so many entries of the legend."""
+    return float(np.clip((WIDTH - 1.0) * view.height / view.width, 1.6, 8.0)) + 1.5 + 0.08 * legend
 
 
 def _frame(axes: Axes, drawing: Drawing, view: View) -> None:
@@ -87,7 +88,7 @@ def _frame(axes: Axes, drawing: Drawing, view: View) -> None:
     for axis, name in ((axes.xaxis, "x"), (axes.yaxis, "y")):
         axis.set_major_formatter(_in_unit(unit))
         axis.set_label_text(f"{name}, {unit.symbol}")
-    axes.set_title(literal(drawing.case.title), fontsize=10, wrap=True)
+    axes.set_title(literal(fill(drawing.case.title, 80)), fontsize=10)
 
 
 def _in_unit(unit: LengthUnit) -> Any:
@@ -221,7 +222,7 @@ def _scale_bar(axes: Axes, view: View) -> None:
     )
 
 
-def _legend(figure: Figure, drawing: Drawing) -> None:
+def _legend(drawing: Drawing) -> list[Any]:
     """Materials by tone and hatch, lines by colour and dashes."""
     from matplotlib.lines import Line2D
     from matplotlib.patches import Patch
@@ -242,7 +243,7 @@ def _legend(figure: Figure, drawing: Drawing) -> None:
             [], [], color="0.1", linewidth=0.6, linestyle=(0, (5, 3)), label="field lines, equal charge between them"
         )
     )
-    figure.legend(handles=handles, loc="outside lower center", ncols=2, frameon=False, fontsize=7)
+    return handles
 
 
 def _conductor_label(drawing: Drawing) -> str:

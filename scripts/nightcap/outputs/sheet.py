@@ -6,7 +6,7 @@ import io
 from collections.abc import Sequence
 from itertools import pairwise
 from pathlib import Path
-from textwrap import wrap
+from textwrap import fill, wrap
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -70,7 +70,7 @@ def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
     axes.set_aspect("equal")
     axes.set_xlim(low[0] - room, high[0] + room)
     axes.set_ylim(low[1] - room, high[1] + room)
-    axes.set_title(literal(case.title), fontsize=10, wrap=True)
+    axes.set_title(literal(fill(case.title, 80)), fontsize=10)
     labels = Labels(axes, 72 * min(WIDTH / width, TALLEST / height))
     _paint(axes, case, drawing, palette)
     _overall(axes, low, high, room)
