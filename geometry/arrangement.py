@@ -14,8 +14,7 @@ from scipy.sparse.csgraph import connected_components
 from scipy.spatial import cKDTree
 
 from nightcap.geometry.crossing import cut_parameters
-from nightcap.geometry.curves import Arc, Curve, Floats, Point, direction_and_bend
-from nightcap.geometry.mesh import Flags, Ints
+from nightcap.geometry.curves import Arc, Curve, Flags, Floats, Ints, Point, direction_and_bend
 
 Loop = tuple[int, ...]
 """Half-edges walked with their face on the left: 2 k along piece k, 2 k + 1 against it."""

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections import Counter
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -14,6 +15,7 @@ from nightcap.geometry.errors import CaseError
 from nightcap.geometry.layout import Layout, Piece, Region, conductor_side
 from nightcap.geometry.layout_checks import find_problems
 from nightcap.geometry.painting import Drawing, paint
+from nightcap.geometry.shapes import chains
 
 OUTSIDE = "outside"
 Content = int | Material | str
@@ -26,13 +28,26 @@ def build_layout(case: Case) -> Layout:
     Raises CaseError with every geometric mistake, e.g. conductors that overlap.
     """
     drawing = paint(case)
-    plane = arrange(drawing.outlines, drawing.tolerance)
-    members = plane.memberships(drawing.outlines)
+    plane, members = _faces(drawing)
     problems = find_problems(case, drawing, plane, members)
     if problems:
         raise CaseError(problems)
     contents = [_content(case, drawing, inside) for inside in members]
     return _Joined(case, drawing, plane, contents).layout()
+
+
+def _faces(drawing: Drawing) -> tuple[Arrangement, list[frozenset[int]]]:
+    """The plane cut by all outlines, and for each of its loops the outlines around the face on its left.
+
+    Outlines with holes are several closed chains; a face lies inside if an odd number of these go around it.
+    """
+    owned = [(number, chain) for number, outline in enumerate(drawing.outlines) for chain in chains(outline)]
+    owner, loops = [number for number, _ in owned], [chain for _, chain in owned]
+    plane = arrange(loops, drawing.tolerance)
+    counts = [Counter(owner[chain] for chain in around) for around in plane.memberships(loops)]
+    members = [frozenset(number for number, count in counted.items() if count % 2) for counted in counts]
+    pieces = (replace(p, outlines=tuple((owner[chain], same) for chain, same in p.outlines)) for p in plane.pieces)
+    return Arrangement(plane.points, tuple(pieces)), members
 
 
 def _content(case: Case, drawing: Drawing, inside: frozenset[int]) -> Content:

@@ -7,9 +7,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from nightcap.geometry.curves import SAME_DIRECTION, Floats, direction_and_bend
+from nightcap.geometry.curves import SAME_DIRECTION, Flags, Floats, Ints, direction_and_bend
 from nightcap.geometry.layout import Layout, Piece
-from nightcap.geometry.mesh import Flags, Ints, Triangulation
+from nightcap.geometry.mesh import Triangulation
 
 
 def cusp_edges(flat: Triangulation) -> Flags:

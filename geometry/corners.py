@@ -7,10 +7,10 @@ from dataclasses import replace
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats, direction_and_bend
+from nightcap.geometry.curves import Floats, Ints, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
-from nightcap.geometry.mesh import Ints, Triangulation, ascending
+from nightcap.geometry.mesh import Triangulation, ascending
 
 SHRINK = 0.4
 """Size of each layer relative to the one around it."""

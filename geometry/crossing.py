@@ -7,8 +7,7 @@ from itertools import pairwise
 
 import numpy as np
 
-from nightcap.geometry.curves import Arc, Curve, Floats
-from nightcap.geometry.mesh import Ints
+from nightcap.geometry.curves import Arc, Curve, Floats, Ints
 
 
 class CurveTable:

@@ -12,6 +12,8 @@ from numpy.typing import NDArray
 Point = tuple[float, float]
 """x, y in metres."""
 Floats = NDArray[np.float64]
+Ints = NDArray[np.int64]
+Flags = NDArray[np.bool_]
 
 
 class Curve(Protocol):

@@ -8,9 +8,9 @@ from functools import cache
 import numpy as np
 
 from nightcap.geometry import polynomials
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Flags, Floats
 from nightcap.geometry.errors import MeshError
-from nightcap.geometry.mesh import CurvedTriangles, Flags, Mesh, Triangulation
+from nightcap.geometry.mesh import CurvedTriangles, Mesh, Triangulation
 from nightcap.geometry.polynomials import EDGES
 
 ORDER = 8

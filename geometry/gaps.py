@@ -10,8 +10,7 @@ from scipy.spatial import cKDTree
 
 from nightcap.geometry.case import Case, OpenSpace
 from nightcap.geometry.crossing import CurveTable
-from nightcap.geometry.curves import Curve, Floats, Point
-from nightcap.geometry.mesh import Ints
+from nightcap.geometry.curves import Curve, Floats, Ints, Point
 from nightcap.geometry.painting import Drawing
 
 

@@ -7,14 +7,10 @@ from functools import cached_property
 
 import numpy as np
 import skfem
-from numpy.typing import NDArray
 
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Flags, Floats, Ints
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, conductor_side
-
-Ints = NDArray[np.int64]
-Flags = NDArray[np.bool_]
 
 
 @dataclass(frozen=True, eq=False)

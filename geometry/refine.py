@@ -7,8 +7,8 @@ from functools import cache
 import numpy as np
 
 from nightcap.geometry import curving, polynomials
-from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import CurvedTriangles, Flags, Ints, Mesh, ascending
+from nightcap.geometry.curves import Flags, Floats, Ints
+from nightcap.geometry.mesh import CurvedTriangles, Mesh, ascending
 from nightcap.geometry.polynomials import EDGES
 
 TURNS = np.array([[0, 1, 2], [1, 2, 0], [2, 0, 1]])

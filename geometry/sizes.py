@@ -7,10 +7,9 @@ import math
 import numpy as np
 
 from nightcap.geometry.corners import corner_sizes
-from nightcap.geometry.curves import SAME_DIRECTION, Floats, Segment, direction_and_bend
+from nightcap.geometry.curves import SAME_DIRECTION, Floats, Ints, Segment, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
-from nightcap.geometry.mesh import Ints
 
 COARSE = 0.25
 """Edge length at a corner, as a fraction of the shortest piece there; finer layers are cut out of such triangles."""

@@ -9,10 +9,10 @@ from types import ModuleType
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, Ints
 from nightcap.geometry.errors import MeshError
 from nightcap.geometry.layout import Layout
-from nightcap.geometry.mesh import Ints, Triangulation, ascending
+from nightcap.geometry.mesh import Triangulation, ascending
 
 OPTIONS = {
     "General.Verbosity": 0,

@@ -8,12 +8,12 @@ import numpy as np
 
 from nightcap.geometry.chords import Lenses, cusp_edges, with_even_cusps
 from nightcap.geometry.corners import with_layers
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, Ints
 from nightcap.geometry.curving import curved_triangles
 from nightcap.geometry.errors import MeshError
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout
-from nightcap.geometry.mesh import Ints, Mesh, Triangulation, ascending
+from nightcap.geometry.mesh import Mesh, Triangulation, ascending
 from nightcap.geometry.sizes import divide_pieces
 from nightcap.geometry.triangulate import triangulate
 

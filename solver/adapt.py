@@ -6,8 +6,8 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import Flags, Mesh
+from nightcap.geometry.curves import Flags, Floats
+from nightcap.geometry.mesh import Mesh
 from nightcap.geometry.refine import refine
 from nightcap.geometry.valid import first_mesh
 from nightcap.solver.fields import Fields

@@ -8,9 +8,8 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, Ints
 from nightcap.geometry.errors import BracketError
-from nightcap.geometry.mesh import Ints
 
 ROUNDING = 1e-10
 """Bounds may contradict each other by so much, relative, before that counts as a contradiction."""

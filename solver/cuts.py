@@ -9,8 +9,8 @@ import numpy as np
 from scipy import sparse
 from scipy.sparse.csgraph import dijkstra
 
-from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import Ints, Mesh
+from nightcap.geometry.curves import Floats, Ints
+from nightcap.geometry.mesh import Mesh
 
 
 @dataclass(frozen=True, eq=False)

@@ -8,8 +8,8 @@ import numpy as np
 
 from nightcap.geometry import curving, polynomials
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
-from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import Flags, Ints, Mesh
+from nightcap.geometry.curves import Flags, Floats, Ints
+from nightcap.geometry.mesh import Mesh
 from nightcap.solver.bracket import Bracket
 from nightcap.solver.stiffness import Stiffness
 

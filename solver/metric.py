@@ -8,8 +8,8 @@ from functools import cache
 import numpy as np
 
 from nightcap.geometry import curving, polynomials
-from nightcap.geometry.curves import Floats
-from nightcap.geometry.mesh import Ints, Mesh
+from nightcap.geometry.curves import Floats, Ints
+from nightcap.geometry.mesh import Mesh
 
 DEGREES = (6, 10, 14, 20)
 """Polynomial degrees tried for the metric of a curved triangle."""

@@ -8,9 +8,9 @@ from scipy.sparse.linalg import SuperLU, splu
 from skfem.assembly import Dofs
 
 from nightcap.geometry import polynomials
-from nightcap.geometry.curves import Floats
+from nightcap.geometry.curves import Floats, Ints
 from nightcap.geometry.curving import require_valid
-from nightcap.geometry.mesh import Ints, Mesh
+from nightcap.geometry.mesh import Mesh
 from nightcap.solver.bracket import Bracket
 from nightcap.solver.cuts import CutTree, cut_tree
 from nightcap.solver.element import ElementTriLagrange, skeleton_size

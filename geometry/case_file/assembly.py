@@ -21,7 +21,7 @@ from nightcap.geometry.case_file.boundaries import read_boundary
 from nightcap.geometry.case_file.consistency import check_case, check_name
 from nightcap.geometry.case_file.constructions import read_constructions
 from nightcap.geometry.case_file.constructions.built import Built
-from nightcap.geometry.case_file.layers import read_coatings
+from nightcap.geometry.case_file.layers import check_coatings, read_coatings
 from nightcap.geometry.case_file.problems import Problems, under
 from nightcap.geometry.case_file.quantities import LENGTHS
 from nightcap.geometry.case_file.schema import (
@@ -35,7 +35,6 @@ from nightcap.geometry.case_file.schema import (
 from nightcap.geometry.case_file.shapes import shaped
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
-from nightcap.geometry.shapes import Polygon
 
 
 def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
@@ -121,8 +120,7 @@ def _conductors(tree: Tree, problems: Problems, context: dict[str, Any]) -> tupl
         coatings = read_coatings(coats, under(path, "coatings"), problems, context)
         if read:
             keys, shape = read
-            if coatings and isinstance(shape, Polygon) and not shape.is_convex:
-                problems.add(under(path, "coatings"), "a coating can be laid around a convex polygon only")
+            check_coatings(shape, coatings, under(path, "coatings"), problems)
             conductors.append(Conductor(name, shape, coatings, keys.floating))
     return tuple(conductors)
 

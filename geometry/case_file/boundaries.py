@@ -12,6 +12,7 @@ from nightcap.geometry.case_file.quantities import Length
 from nightcap.geometry.case_file.schema import Entry, Text, checked
 from nightcap.geometry.case_file.shapes import shaped
 from nightcap.geometry.case_file.yaml_tree import Tree
+from nightcap.geometry.shapes import chains
 
 
 class ShieldKeys(Entry):
@@ -37,6 +38,9 @@ class GroundPlaneKeys(Entry):
 
 def _shield(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
     read = shaped(ShieldKeys, tree, path, problems, context)
+    if read and len(chains(read[1].outline())) > 1:
+        problems.add(under(path, "shape"), "the inside of a shield has no hole; draw what is in it as a conductor")
+        return None
     return Shield(read[1], read[0].name) if read else None
 
 

@@ -8,6 +8,7 @@ from nightcap.geometry.case import Coating
 from nightcap.geometry.case_file.problems import Problems, under
 from nightcap.geometry.case_file.schema import CoatingEntry, checked
 from nightcap.geometry.case_file.yaml_tree import Tree
+from nightcap.geometry.shapes import Shape
 
 MOST_LAYERS = 20
 
@@ -24,3 +25,15 @@ def read_coatings(tree: Tree, path: str, problems: Problems, context: dict[str, 
         return ()
     read = [checked(CoatingEntry, layer, under(path, k), problems, context) for k, layer in enumerate(tree)]
     return tuple(Coating(layer.thickness, layer.record()) for layer in read if layer)
+
+
+def check_coatings(shape: Shape, coatings: tuple[Coating, ...], path: str, problems: Problems) -> None:
+    """Notes a coating that cannot be laid evenly around a figure."""
+    thickness = 0.0
+    for k, coating in enumerate(coatings):
+        thickness += coating.thickness
+        try:
+            shape.grown(thickness).outline()
+        except ValueError as error:
+            problems.add(under(path, k), f"cannot be laid evenly around this figure: it {error}")
+            return

@@ -87,12 +87,17 @@ def _point(value: object, info: ValidationInfo) -> tuple[float, float]:
     return (_length(value[0], info), _length(value[1], info))
 
 
-def _points(value: object, info: ValidationInfo) -> tuple[tuple[float, float], ...]:
-    if not isinstance(value, list) or len(value) < 3:
-        raise ValueError("must be a list of at least 3 points, e.g. [[0, 0], [2, 0], [0, 1]]")
+def points_of(value: object, info: ValidationInfo, least: int, example: str) -> tuple[tuple[float, float], ...]:
+    """A list of at least so many points, m. Raises ValueError."""
+    if not isinstance(value, list) or len(value) < least:
+        raise ValueError(f"must be a list of at least {least} points, e.g. {example}")
     if len(value) > MOST_POINTS:
         raise ValueError(f"must be at most {MOST_POINTS} points")
     return tuple(_point(item, info) for item in value)
+
+
+def _corners(value: object, info: ValidationInfo) -> tuple[tuple[float, float], ...]:
+    return points_of(value, info, least=3, example="[[0, 0], [2, 0], [0, 1]]")
 
 
 def _within(units: Mapping[str, float], low: float, high: float, example: str) -> Callable[[object], float]:
@@ -120,8 +125,9 @@ Length = Annotated[float, BeforeValidator(_length)]
 PositiveLength = Annotated[float, BeforeValidator(_positive)]
 LengthFromZero = Annotated[float, BeforeValidator(_not_negative)]
 PointOf = Annotated[tuple[float, float], BeforeValidator(_point)]
-Points = Annotated[tuple[tuple[float, float], ...], BeforeValidator(_points)]
+Points = Annotated[tuple[tuple[float, float], ...], BeforeValidator(_corners)]
 Gauge = Annotated[float, BeforeValidator(_awg)]
+PlainNumber = Annotated[float, BeforeValidator(_within({}, -1e12, 1e12, "30"))]
 Degrees = Annotated[float, BeforeValidator(_within({}, -360.0, 360.0, "30"))]
 Permittivity = Annotated[float, BeforeValidator(_within({}, 1.0, 1e5, "2.26"))]
 LossTangent = Annotated[float, BeforeValidator(_within({}, 0.0, 10.0, "2e-4"))]

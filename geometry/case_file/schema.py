@@ -150,7 +150,7 @@ def checked(
 ) -> EntryType | None:
     """An entry of a model, or None after noting every mistake in it."""
     if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the keys {listed(model.model_fields)}")
+        problems.add(path, f"must be a mapping with the keys {listed(_keys(model))}")
         return None
     try:
         return model.model_validate(tree, context=dict(context))
@@ -160,13 +160,18 @@ def checked(
         return None
 
 
+def _keys(model: type[Entry]) -> list[str]:
+    """The keys of a model as a file spells them."""
+    return [info.alias or name for name, info in model.model_fields.items()]
+
+
 def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -> None:
     place = path
     for key in detail["loc"]:
         place = under(place, key)
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
-        known = list(model.model_fields)
+        known = _keys(model)
         problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
     elif detail["type"] == "missing":
         problems.add(path, f"the key '{name}' is missing")

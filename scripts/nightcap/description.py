@@ -10,7 +10,8 @@ from nightcap.digits import grouped
 from nightcap.geometry.case import Case, Coating, GroundPlane, Limits, Material, OpenSpace, Shield
 from nightcap.geometry.curves import Point
 from nightcap.geometry.layout import Layout
-from nightcap.geometry.shapes import Circle, Polygon, Rectangle
+from nightcap.geometry.motion import Moved
+from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector
 from nightcap.lengths import length_text
 
 
@@ -55,10 +56,47 @@ def _(circle: Circle) -> str:
 
 
 @describe.register
+def _(ring: Ring) -> str:
+    outer, inner = length_text(2 * ring.outer), length_text(2 * ring.inner)
+    return f"ring, diameters {outer} and {inner}, at {_point(ring.centre)}"
+
+
+@describe.register
+def _(sector: Sector) -> str:
+    radii = f"radii {length_text(sector.inner)} to {length_text(sector.outer)}"
+    angles = f"from {math.degrees(sector.start):.6g} to {math.degrees(sector.end):.6g} degrees"
+    return f"sector, {radii}, {angles}{_corners(sector.corner_radius)}, about {_point(sector.centre)}"
+
+
+@describe.register
+def _(strip: LappedStrip) -> str:
+    text = f"lapped strip, radius within {length_text(strip.inner)}, thickness {length_text(strip.thickness)}"
+    lap = f"overlap {length_text(strip.overlap * strip.inner)}, clearance {length_text(strip.clearance)}"
+    return f"{text}, {lap}, about {_point(strip.centre)}"
+
+
+@describe.register
+def _(strip: BentStrip) -> str:
+    ends = f"from {_point(strip.points[0])} to {_point(strip.points[-1])}"
+    return f"bent strip through {len(strip.points)} points, {ends}, thickness {length_text(strip.thickness)}"
+
+
+@describe.register
+def _(moved: Moved) -> str:
+    motion = moved.motion
+    mirrored = ", mirrored" if motion.mirrored else ""
+    turned = f", turned {math.degrees(motion.angle):.6g} degrees" if motion.angle else ""
+    return f"{describe(moved.figure)}{mirrored}{turned}, moved by {_point(motion.shift)}"
+
+
+def _corners(radius: float) -> str:
+    return f", corner radius {length_text(radius)}" if radius else ""
+
+
+@describe.register
 def _(rectangle: Rectangle) -> str:
     text = f"rectangle, {length_text(rectangle.width)} x {length_text(rectangle.height)}"
-    if rectangle.corner_radius:
-        text += f", corner radius {length_text(rectangle.corner_radius)}"
+    text += _corners(rectangle.corner_radius)
     if rectangle.angle:
         text += f", turned {math.degrees(rectangle.angle):.6g} degrees"
     return f"{text}, at {_point(rectangle.centre)}"

@@ -133,11 +133,11 @@ FAULTS = {
     "coating on a hollow polygon": (
         changed(
             "    shape: circle\n    radius: 0.2\n    at: [0.6, 0]\n",
-            "    shape: polygon\n    points: [[0, 0], [1, 0], [0.2, 0.2], [0, 1]]\n",
+            "    shape: polygon\n    points: [[0, 0], [1, 0], [0.05, 0.05], [0, 1]]\n",
         ),
-        8,
-        "conductors.white.coatings",
-        "convex",
+        9,
+        "conductors.white.coatings[0]",
+        "too thick for a hollow corner",
     ),
     "coatings as mapping": (
         changed("      - {thickness: 0.1, permittivity: 2.3}", "      thickness: 0.1"),

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from nightcap.geometry.case import Conductor
 from nightcap.geometry.case_file.constructions.built import Place, total_thickness
-from nightcap.geometry.case_file.layers import read_coatings
+from nightcap.geometry.case_file.layers import check_coatings, read_coatings
 from nightcap.geometry.case_file.problems import under
 from nightcap.geometry.case_file.schema import ConductorKeys
 from nightcap.geometry.case_file.shapes import shaped
@@ -26,7 +26,10 @@ def read_wire(place: Place) -> Conductor | None:
     read = shaped(ConductorKeys, tree, wire.path, wire.problems, wire.context)
     coats = tree.get("coatings") if isinstance(tree, dict) else None
     coatings = read_coatings(coats, under(wire.path, "coatings"), wire.problems, wire.context)
-    return Conductor("", read[1], coatings, read[0].floating) if read else None
+    if read is None:
+        return None
+    check_coatings(read[1], coatings, under(wire.path, "coatings"), wire.problems)
+    return Conductor("", read[1], coatings, read[0].floating)
 
 
 def overall_size(wire: Conductor) -> Point:

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import io
 from collections.abc import Sequence
-from itertools import pairwise
 from pathlib import Path
 from textwrap import fill, wrap
 from typing import TYPE_CHECKING, Any
@@ -15,7 +14,7 @@ from nightcap.geometry.case import Case, Material, OpenSpace
 from nightcap.geometry.curves import Floats, Point
 from nightcap.geometry.errors import Problem
 from nightcap.geometry.painting import Drawing, paint
-from nightcap.geometry.shapes import Outline
+from nightcap.geometry.shapes import Outline, chains
 from nightcap.lengths import rounded_length
 from nightcap.outputs.labels import Labels, literal
 from nightcap.outputs.measures import Measure, measures
@@ -131,13 +130,7 @@ def _names(case: Case, labels: Labels) -> None:
 
 def loops_of(outline: Outline) -> list[Floats]:
     """The closed polygons of an outline, which may have holes."""
-    size = sum(curve.length for curve in outline)
-    loops: list[list[Floats]] = [[points_along(outline[0])[:-1]]]
-    for before, curve in pairwise(outline):
-        if np.hypot(*np.subtract(curve.start, before.end)) > 1e-9 * size:
-            loops.append([])
-        loops[-1].append(points_along(curve)[:-1])
-    return [np.concatenate(loop) for loop in loops]
+    return [np.concatenate([points_along(curve)[:-1] for curve in chain]) for chain in chains(outline)]
 
 
 def _overall(axes: Axes, low: Floats, high: Floats, room: float) -> None:
