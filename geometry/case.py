@@ -82,6 +82,8 @@ class Limits:
     """bytes."""
     time: float = 600.0
     """s."""
+    variants: int = 10_000
+    """Combinations of varied parameters."""
 
 
 @dataclass(frozen=True)
@@ -95,6 +97,19 @@ class Expectation:
     source: str
     exact: bool = False
     """True if the value is exact to all digits: it must then lie inside the bracket."""
+
+
+@dataclass(frozen=True)
+class Parameter:
+    """A name that stands for a number in a case file."""
+
+    name: str
+    value: float
+    """m if it is a length, else as written."""
+    is_length: bool = False
+    formula: str = ""
+    """As written, if it is derived from others."""
+    is_used: bool = True
 
 
 @dataclass(frozen=True)
@@ -132,4 +147,10 @@ class Case:
     """Half-width of the bracket of every entry, relative to sqrt(C_ii C_jj)."""
     limits: Limits = Limits()
     expect: Expectation | None = None
+    parameters: tuple[Parameter, ...] = ()
+    """All of them with their values in this variant."""
+    variant: Mapping[str, float] = field(default_factory=dict, hash=False)
+    """The varied parameters: m for a length, else as written. Empty if the file varies nothing."""
+    variant_name: str = ""
+    """Such as ``pitch=1.22,wall=0.35``; fit for the name of a folder."""
     source: Source = field(default=Source(), compare=False)

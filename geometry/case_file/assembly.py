@@ -31,6 +31,7 @@ from nightcap.geometry.case_file.schema import (
     checked,
 )
 from nightcap.geometry.case_file.shapes import shaped
+from nightcap.geometry.case_file.values import Values
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.shapes import Polygon
@@ -38,10 +39,9 @@ from nightcap.geometry.shapes import Polygon
 MOST_LAYERS = 20
 
 
-def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
-    """Builds the case. Raises CaseError with every mistake of the file."""
-    unit = tree.get("units")
-    context = {"unit": LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3}
+def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None) -> Case:
+    """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file."""
+    context = {"unit": file_unit(tree), "values": values or Values()}
     entry = checked(CaseEntry, tree, "", problems, context)
     conductors = _conductors(tree.get("conductors"), problems, context)
     dielectrics = _dielectrics(tree.get("dielectrics"), problems, context)
@@ -69,6 +69,12 @@ def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
     check_case(case, problems)
     problems.raise_any()
     return case
+
+
+def file_unit(tree: dict[str, Tree]) -> float:
+    """The unit of bare numbers, m."""
+    unit = tree.get("units")
+    return LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3
 
 
 def _default_reference(boundary: Boundary, conductors: tuple[Conductor, ...]) -> str:
@@ -137,7 +143,7 @@ def _background(tree: Tree, problems: Problems, context: dict[str, Any]) -> Mate
 
 def _limits(tree: Tree, problems: Problems, context: dict[str, Any]) -> Limits:
     entry = checked(LimitsEntry, tree, "limits", problems, context) if tree is not None else None
-    return Limits(entry.triangles, entry.memory, entry.time) if entry else Limits()
+    return Limits(entry.triangles, entry.memory, entry.time, entry.variants) if entry else Limits()
 
 
 def _expect(tree: Tree, problems: Problems, context: dict[str, Any]) -> Expectation | None:
