@@ -119,9 +119,12 @@ class Source:
     file: str = ""
     lines: Mapping[str, int] = field(default_factory=dict)
     """Dotted key path to line number, counted from 1."""
+    origins: Mapping[str, str] = field(default_factory=dict)
+    """Key path that an entry took over from another by 'like', to the path where it was written."""
 
     def problem(self, key: str, text: str) -> Problem:
         """A mistake at a key; if the key itself has no line, that of the nearest key above it."""
+        key = self.origins.get(key, key)
         path = key
         while path and path not in self.lines:
             path = path[: max(path.rfind("."), path.rfind("["), 0)]

@@ -27,7 +27,9 @@ MANY = 30
 
 
 def _round(value: float, digits: float = 0.0) -> float:
-    return float(round(value, int(max(-300.0, min(digits, 300.0)))))
+    if not (abs(digits) <= 300 and digits.is_integer()):
+        raise ValueError("not a whole number of digits")
+    return float(round(value, int(digits)))
 
 
 FUNCTIONS: dict[str, tuple[Callable[..., float], int, int]] = {

@@ -126,10 +126,12 @@ class _Group:
         return copy.deepcopy({**inherited, **own})
 
     def _note_lines(self, value: Tree, there: str, here: str) -> None:
-        """Gives an inherited value and all below it the lines where they were written."""
-        lines = self.problems.source.lines
-        if there in lines and isinstance(lines, dict):
-            lines.setdefault(here, lines[there])
+        """Lets an inherited value and all below it point to where they were written."""
+        source = self.problems.source
+        if isinstance(source.lines, dict) and isinstance(source.origins, dict):
+            source.origins[here] = source.origins.get(there, there)
+            if there in source.lines:
+                source.lines[here] = source.lines[there]
         below = value.items() if isinstance(value, dict) else enumerate(value) if isinstance(value, list) else ()
         for key, item in below:
             self._note_lines(item, under(there, key), under(here, key))

@@ -37,11 +37,13 @@ class Parameters:
     unit: float = 1e-3
     """m."""
     usage: Usage = field(default_factory=Usage)
+    is_unreadable: bool = False
+    """True if there are parameters, but no mapping of them."""
 
     def values(self, given: Mapping[str, float], problems: Problems) -> Values:
         """All values, those of ``given`` instead of what the file derives; what has no value is noted and NaN."""
         known = dict.fromkeys([*self.formulas, *self.others], math.nan) | dict(given)
-        values = Values(known, self.unit, self.usage)
+        values = Values(known, self.unit, self.usage, self.is_unreadable)
         for name in self.order:
             if name not in given and not any(math.isnan(known[one]) for one in self.formulas[name].names):
                 try:
@@ -101,7 +103,7 @@ def read_parameters(tree: Tree, unit: float, problems: Problems, varied: Iterabl
         return Parameters(others=names, unit=unit)
     if not isinstance(tree, dict) or len(tree) > MOST_PARAMETERS:
         problems.add("parameters", f"must be a mapping of at most {MOST_PARAMETERS} names to numbers, {{pitch: 1.24}}")
-        return Parameters(others=names, unit=unit)
+        return Parameters(others=names, unit=unit, is_unreadable=True)
     formulas: dict[str, Formula] = {}
     for name, value in tree.items():
         path = under("parameters", name)

@@ -40,6 +40,8 @@ class Values:
     unit: float = 1e-3
     """m."""
     usage: Usage = field(default_factory=Usage)
+    is_unreadable: bool = False
+    """True if the file's parameters could not be read, so that any name may be one."""
 
     def evaluate(self, text: str, example: str, *, is_length: bool = False) -> float:
         """The value of an expression, in the file's unit if it is a length. Raises ValueError with the reason."""
@@ -60,6 +62,8 @@ class Values:
     def check_names(self, found: Formula, example: str) -> None:
         """Raises ValueError if an expression holds a name that is no parameter."""
         unknown = [name for name in found.names if name not in self.known]
+        if unknown and self.is_unreadable:
+            raise PydanticCustomError(FOLLOWS, "uses a parameter that is wrong itself")
         if unknown:
             is_word = WORD.fullmatch(found.text.strip()) is not None
             lead = f"{shown(found.text)} is not a number, e.g. {example}, nor a parameter" if is_word else ""

@@ -73,5 +73,7 @@ def _make_folder(out: Path) -> None:
 def _closing(results: Sequence[Result], out: Path) -> Iterator[str]:
     yield from summary_lines(results) if len(results) > 1 else [summary_line(results)]
     yield f"Results are in {out}."
-    if any(result.status != FAILED for result in results):
+    if any(result.variant_name for result in results):
+        yield "The table of a case's variants is summary.csv in its folder."
+    if any(result.status != FAILED and not result.variant_name for result in results):
         yield EXPLANATION

@@ -235,9 +235,6 @@ FAULTS = {
         "as many columns",
     ),
     "title as list": (BASE + "title: [a]\n", 12, "title", "must be text"),
-    "parameters": (BASE + "parameters: {pitch: 1}\n", 12, "parameters", "not available in this version"),
-    "vary": (BASE + "vary: {pitch: [1]}\n", 12, "vary", "not available in this version"),
-    "like": (changed("shape: circle, radius: 0.2,", "like: white,"), 4, "conductors.red.like", "not available"),
 }
 
 
