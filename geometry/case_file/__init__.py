@@ -3,8 +3,8 @@
 The way of a file, each step a module:
 
     text -> tree with line numbers (yaml_tree) -> expanded tree (expansion, likeness) -> parameters and variants
-    (parameters, variants) -> for each variant: checked entries (schema, shapes, boundaries, quantities, expressions) ->
-    Case (assembly), checked for what only the whole can tell (consistency)
+    (parameters, axes, variants) -> for each variant: checked entries (schema, shapes, boundaries, quantities,
+    expressions) -> Case (assembly), checked for what only the whole can tell (consistency)
 
 ``document`` holds a file that was read once, ``survey`` all of its variants.
 """

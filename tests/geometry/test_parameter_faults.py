@@ -117,6 +117,7 @@ FAULTS = {
     "vary by a list of lists": (vary("pitch: [[1.2]]"), 10, "vary.pitch[0]", "must be a number"),
     "vary by a unit": (vary("pitch: [1.2 parsec]"), 10, "vary.pitch[0]", "unknown unit"),
     "value twice": (vary("pitch: [1.2, 1.2 mm]"), 10, "vary.pitch", "1.2mm is given twice"),
+    "value twice but for rounding": (vary("pitch: [1.2, 1.200000000000001]"), 10, "vary.pitch", "1.2 is given twice"),
     "unknown parameter": (vary("pich: [1.2, 1.3]"), 10, "vary.pich", "depends on 'pich'; did you mean 'pitch'?"),
     "name of a varied parameter": (vary("mm: [1.2, 1.3]"), 10, "vary.mm", "is a unit"),
     "range without end": (vary("pitch: {from: 1, steps: 3}"), 10, "vary.pitch", "the key 'to' is missing"),

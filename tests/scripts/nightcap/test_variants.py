@@ -63,7 +63,8 @@ def test_each_variant_is_a_job_with_its_values_and_folder(coax: Path) -> None:
     assert jobs[3].values[2] == ("eps", 2.5)
 
 
-def test_a_file_that_cannot_be_used_or_varies_nothing_stays_one_job(coax: Path, tmp_path: Path) -> None:
+@pytest.mark.usefixtures("coax")
+def test_a_file_that_cannot_be_used_or_varies_nothing_stays_one_job(tmp_path: Path) -> None:
     for name, text in (
         ("broken", COAX.format(vary="  inner: [a, 2]")),
         ("bad", COAX.format(vary=CLOSED).replace("[1, 0.05 in]", "[-1, -2]")),
@@ -76,7 +77,8 @@ def test_a_file_that_cannot_be_used_or_varies_nothing_stays_one_job(coax: Path, 
     assert len(jobs_of(tmp_path)) == 8
 
 
-def test_a_case_in_the_place_of_a_variant_is_refused(coax: Path, tmp_path: Path) -> None:
+@pytest.mark.usefixtures("coax")
+def test_a_case_in_the_place_of_a_variant_is_refused(tmp_path: Path) -> None:
     (tmp_path / "coax").mkdir()
     (tmp_path / "coax/inner=1,shift=0,eps=1.yaml").write_text("conductors: {}")
     with pytest.raises(UsageError, match="share the result folder coax/inner=1,shift=0,eps=1"):
@@ -95,7 +97,7 @@ def test_run_writes_a_folder_for_each_variant_and_a_table(
     assert shown.out.count(": met; ") == 4
     assert "4 of 4 met" in shown.out
     assert "1 case, 4 variants in all: 4 met" in shown.out
-    assert max(map(len, shown.out.splitlines())) <= 80
+    assert max(len(line) for line in shown.out.splitlines() if str(out) not in line) <= 80
     lines = table(out / "coax/summary.csv")
     assert [line["variant"] for line in lines] == [job.variant for job in jobs_of(coax)]
     for line in lines:
@@ -249,7 +251,7 @@ def test_table_that_cannot_be_written_is_said_and_leaves_with_1(
     assert main(["run", str(coax), "--out", str(tmp_path / "out"), "--jobs", "1"]) == 1
     captured = capsys.readouterr()
     assert "summary.csv: could not be written" in captured.err
-    assert "4 of 4 met" in captured.out or "4 met" in captured.out
+    assert "4 met, 0 not met, 0 failed" in captured.out
 
 
 def test_worker_that_dies_fails_its_variant_with_its_values(tmp_path: Path) -> None:
