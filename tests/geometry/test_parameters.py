@@ -281,3 +281,10 @@ def test_screen_follows_a_parameter(file: Path) -> None:
         assert isinstance(case.boundary, Shield)
         assert isinstance(case.boundary.shape, Circle)
         assert_allclose(case.boundary.shape.radius, 1.5 * pitch, rtol=1e-14)
+
+
+def test_what_is_derived_from_a_length_is_one() -> None:
+    case = read_text(pair(spare="2*core + 1", other="spare/2", ratio="core/wall"))
+    assert {p.name: p.is_length for p in case.parameters if not p.is_used} == {
+        "spare": True, "other": True, "ratio": False,
+    }  # fmt: skip
