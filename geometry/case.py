@@ -82,6 +82,8 @@ class Limits:
     """bytes."""
     time: float = 600.0
     """s."""
+    variants: int = 10_000
+    """Combinations of varied parameters."""
 
 
 @dataclass(frozen=True)
@@ -98,18 +100,34 @@ class Expectation:
 
 
 @dataclass(frozen=True)
+class Parameter:
+    """A name that stands for a number in a case file."""
+
+    name: str
+    value: float
+    """m if it is a length, else as written."""
+    is_length: bool = False
+    formula: str = ""
+    """As written, if it is derived from others."""
+    is_used: bool = True
+
+
+@dataclass(frozen=True)
 class Source:
     """Where each key of a case was written, so that later checks can point at it."""
 
     file: str = ""
     lines: Mapping[str, int] = field(default_factory=dict)
     """Dotted key path to line number, counted from 1."""
+    origins: Mapping[str, str] = field(default_factory=dict)
+    """Key path that an entry took over from another by 'like', to the path where it was written."""
 
     def problem(self, key: str, text: str) -> Problem:
         """A mistake at a key; if the key itself has no line, that of the nearest key above it.
 
         What a construction draws has no lines of its own: the construction is to blame.
         """
+        key = self.origins.get(key, key)
         group, _, name = key.partition(".")
         drawn = f"constructions.{name}"
         unwritten = group in ("conductors", "dielectrics") and self._written(key) in (group, "")
@@ -143,4 +161,10 @@ class Case:
     """Half-width of the bracket of every entry, relative to sqrt(C_ii C_jj)."""
     limits: Limits = Limits()
     expect: Expectation | None = None
+    parameters: tuple[Parameter, ...] = ()
+    """All of them with their values in this variant."""
+    variant: Mapping[str, float] = field(default_factory=dict, hash=False)
+    """The varied parameters: m for a length, else as written. Empty if the file varies nothing."""
+    variant_name: str = ""
+    """Such as ``pitch=1.22,wall=0.35``; fit for the name of a folder."""
     source: Source = field(default=Source(), compare=False)

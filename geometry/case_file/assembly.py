@@ -33,14 +33,14 @@ from nightcap.geometry.case_file.schema import (
     checked,
 )
 from nightcap.geometry.case_file.shapes import shaped
+from nightcap.geometry.case_file.values import Values
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 
 
-def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
-    """Builds the case. Raises CaseError with every mistake of the file."""
-    unit = tree.get("units")
-    context = {"unit": LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3}
+def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None) -> Case:
+    """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file."""
+    context = {"unit": file_unit(tree), "values": values or Values()}
     entry = checked(CaseEntry, tree, "", problems, context)
     conductors, dielectrics = _drawn(tree, problems, context)
     background = _background(tree.get("background"), problems, context)
@@ -67,6 +67,12 @@ def assemble(tree: dict[str, Tree], name: str, problems: Problems) -> Case:
     check_case(case, problems)
     problems.raise_any()
     return case
+
+
+def file_unit(tree: dict[str, Tree]) -> float:
+    """The unit of bare numbers, m."""
+    unit = tree.get("units")
+    return LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3
 
 
 def _default_reference(boundary: Boundary, conductors: tuple[Conductor, ...]) -> str:
@@ -141,7 +147,7 @@ def _background(tree: Tree, problems: Problems, context: dict[str, Any]) -> Mate
 
 def _limits(tree: Tree, problems: Problems, context: dict[str, Any]) -> Limits:
     entry = checked(LimitsEntry, tree, "limits", problems, context) if tree is not None else None
-    return Limits(entry.triangles, entry.memory, entry.time) if entry else Limits()
+    return Limits(entry.triangles, entry.memory, entry.time, entry.variants) if entry else Limits()
 
 
 def _expect(tree: Tree, problems: Problems, context: dict[str, Any]) -> Expectation | None:

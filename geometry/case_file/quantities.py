@@ -8,43 +8,75 @@ from collections.abc import Callable, Mapping
 from typing import Annotated, Any
 
 from pydantic import BeforeValidator, ValidationInfo
+from pydantic_core import PydanticCustomError
 
-LENGTHS: dict[str, float] = {
-    "m": 1.0,
-    "cm": 1e-2,
-    "mm": 1e-3,
-    "um": 1e-6,
-    "µm": 1e-6,
-    "μm": 1e-6,
-    "nm": 1e-9,
-    "mil": 25.4e-6,
-    "in": 25.4e-3,
-    "inch": 25.4e-3,
-    "ft": 0.3048,
-}
-"""Units of length, m. Source: ISO 80000-3; the inch is 25.4 mm exactly."""
+from nightcap.geometry.case_file import units
+from nightcap.geometry.case_file.values import Values, shown
+
+LENGTHS = units.LENGTHS
+"""Units of length, m."""
 MEMORY = {"B": 1.0, "kB": 1e3, "MB": 1e6, "GB": 1e9, "KiB": 2.0**10, "MiB": 2.0**20, "GiB": 2.0**30}
 TIMES = {"s": 1.0, "min": 60.0, "h": 3600.0}
 PER_CENT = {"%": 0.01}
-QUANTITY = re.compile(r"\s*([-+]?(?:\.[0-9]+|[0-9]+(?:\.[0-9]*)?)(?:[eE][-+]?[0-9]+)?)\s*(\S*)\s*")
+QUANTITY = re.compile(r"\s*([-+]?(?:\.[0-9]+|[0-9]+(?:\.[0-9]*)?)(?:[eE][-+]?[0-9]+)?)\s*(%|[^\W\d_]*)\s*")
 LONGEST = 1e9
 """m; no cross-section is larger, and squares of it are still far from overflow."""
 MOST_POINTS = 1000
 
 
-def number(value: object, units: Mapping[str, float], bare: float, example: str) -> float:
-    """A number, or text of number and unit, in SI. Raises ValueError with what is allowed."""
+def number(
+    value: object,
+    units: Mapping[str, float],
+    bare: float,
+    example: str,
+    values: Values | None = None,
+    *,
+    is_length: bool = False,
+) -> float:
+    """A number, or text of number and unit, or an expression, in SI. Raises ValueError with what is allowed.
+
+    units : the units that may follow the number; bare : the unit of a number without one, and of an expression;
+    values : the parameters that an expression may use; is_length : whether the parameters that are added up in an
+    expression are lengths.
+    """
     if isinstance(value, bool) or not isinstance(value, int | float | str):
         raise ValueError(f"must be a number, e.g. {example}")
     if not isinstance(value, str):
         return _finite(value) * bare
     match = QUANTITY.fullmatch(value)
+    known = values or Values()
     if not match:
-        raise ValueError(f"{value!r} is not a number, e.g. {example}")
+        return known.evaluate(value, example, is_length=is_length) * bare
     digits, unit = match.groups()
     if unit and unit not in units:
-        raise ValueError(f"unknown unit {unit!r}; allowed: {', '.join(units)}")
+        product = f"; write {digits}*{unit} for a product" if unit in known.known else ""
+        allowed = f"; allowed: {', '.join(units)}" if units else "; this number has none"
+        raise ValueError(f"unknown unit {shown(unit)}{allowed}{product}")
     return _finite(float(digits)) * (units[unit] if unit else bare)
+
+
+def whole(value: object, low: int, high: int, info: ValidationInfo, also: str = "") -> int:
+    """A whole number, possibly by an expression. Raises ValueError with what is allowed. also : what else may stand."""
+    allowed = f"must be a whole number from {low} to {high}{also}"
+    result = value
+    if isinstance(value, str):
+        try:
+            result = number(value, {}, 1.0, str(max(low, 1)), values_of(info))
+        except PydanticCustomError:
+            raise
+        except ValueError as error:
+            raise ValueError(f"{allowed}; {error}") from None
+    if isinstance(result, float) and result.is_integer():
+        result = int(result)
+    if isinstance(result, bool) or not isinstance(result, int) or not low <= result <= high:
+        raise ValueError(allowed)
+    return result
+
+
+def values_of(info: ValidationInfo) -> Values:
+    """The parameters of the file that is being read."""
+    found = (info.context or {}).get("values")
+    return found if isinstance(found, Values) else Values()
 
 
 def _finite(value: float) -> float:
@@ -59,7 +91,7 @@ def _finite(value: float) -> float:
 
 def _length(value: object, info: ValidationInfo) -> float:
     context: dict[str, Any] = info.context or {}
-    length = number(value, LENGTHS, context.get("unit", 1e-3), '1.5 or "1.5 mm"')
+    length = number(value, LENGTHS, context.get("unit", 1e-3), '1.5 or "1.5 mm"', values_of(info), is_length=True)
     if abs(length) > LONGEST:
         raise ValueError(f"must be at most {LONGEST:g} m")
     return length
@@ -100,9 +132,11 @@ def _corners(value: object, info: ValidationInfo) -> tuple[tuple[float, float], 
     return points_of(value, info, least=3, example="[[0, 0], [2, 0], [0, 1]]")
 
 
-def _within(units: Mapping[str, float], low: float, high: float, example: str) -> Callable[[object], float]:
-    def check(value: object) -> float:
-        result = number(value, units, 1.0, example)
+def _within(
+    units: Mapping[str, float], low: float, high: float, example: str
+) -> Callable[[object, ValidationInfo], float]:
+    def check(value: object, info: ValidationInfo) -> float:
+        result = number(value, units, 1.0, example, values_of(info))
         if not low <= result <= high:
             raise ValueError(f"must lie between {low:g} and {high:g}")
         return result
@@ -110,14 +144,12 @@ def _within(units: Mapping[str, float], low: float, high: float, example: str) -
     return check
 
 
-def _awg(value: object) -> float:
+def _awg(value: object, info: ValidationInfo) -> float:
     """Diameter of a wire gauge, m: d = 0.005 in 92^((36 - n) / 39). Source: ASTM B258."""
     if isinstance(value, str) and re.fullmatch(r"[1-4]/0", value):
         gauge = 1 - int(value[0])
-    elif isinstance(value, int) and not isinstance(value, bool) and 0 <= value <= 50:
-        gauge = value
     else:
-        raise ValueError('must be a whole number from 0 to 50, or "1/0" to "4/0"')
+        gauge = whole(value, 0, 50, info, ', or "1/0" to "4/0"')
     return float(0.005 * 25.4e-3 * 92.0 ** ((36 - gauge) / 39))
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Annotated, Any, TypeVar
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, ValidationInfo
 
 from nightcap.geometry.case import Limits, Material
 from nightcap.geometry.case_file.problems import Problems, listed, nearest, under
@@ -18,7 +18,11 @@ from nightcap.geometry.case_file.quantities import (
     Permittivity,
     PositiveLength,
     Tolerance,
+    number,
+    values_of,
+    whole,
 )
+from nightcap.geometry.case_file.values import FOLLOWS
 from nightcap.geometry.case_file.yaml_tree import Tree
 
 
@@ -55,10 +59,12 @@ def _label(value: object) -> str:
     return _text(value)
 
 
-def _count(value: object) -> int:
-    if isinstance(value, bool) or not isinstance(value, int) or not 100 <= value <= 10**8:
-        raise ValueError("must be a whole number from 100 to 100000000")
-    return value
+def _triangles(value: object, info: ValidationInfo) -> int:
+    return whole(value, 100, 10**8, info)
+
+
+def _variants(value: object, info: ValidationInfo) -> int:
+    return whole(value, 1, 10**6, info)
 
 
 def _names(value: object) -> tuple[tuple[str, ...], ...]:
@@ -70,14 +76,14 @@ def _names(value: object) -> tuple[tuple[str, ...], ...]:
     return tuple(tuple(group) for group in groups)
 
 
-def _matrix(value: object) -> tuple[tuple[float, ...], ...]:
+def _matrix(value: object, info: ValidationInfo) -> tuple[tuple[float, ...], ...]:
     if not isinstance(value, list) or not value or any(not isinstance(row, list) for row in value):
         raise ValueError("must be a matrix, e.g. [[3.2, -1.1], [-1.1, 3.2]]")
-    if any(isinstance(x, bool) or not isinstance(x, int | float) for row in value for x in row):
+    if any(isinstance(x, bool) or not isinstance(x, int | float | str) for row in value for x in row):
         raise ValueError("must hold plain numbers")
     if any(len(row) != len(value) for row in value):
         raise ValueError("must have as many columns as rows")
-    return tuple(tuple(float(x) for x in row) for row in value)
+    return tuple(tuple(number(x, {}, 1.0, "3.2", values_of(info)) for x in row) for row in value)
 
 
 Text = Annotated[str, BeforeValidator(_text)]
@@ -113,7 +119,10 @@ class ConductorKeys(Entry):
 class LimitsEntry(Entry):
     """What a case may use."""
 
-    triangles: Annotated[int, BeforeValidator(_count)] = Limits().triangles
+    triangles: Annotated[int, BeforeValidator(_triangles)] = Limits().triangles
+    variants: Annotated[int, BeforeValidator(_variants)] = Field(
+        Limits().variants, description="Combinations of the values in 'vary'."
+    )
     memory: Memory = Limits().memory
     time: Duration = Limits().time
 
@@ -134,6 +143,8 @@ class CaseEntry(Entry):
     title: Text = Field("", description="One line about the case.")
     units: Annotated[float, BeforeValidator(_unit)] = Field(1e-3, description="Unit of bare numbers.")
     accuracy: Accuracy = Field(1e-4, description="Half-width of the bracket relative to sqrt(C_ii C_jj).")
+    parameters: Any = Field(None, description="Name to number or formula; the names may stand in any number.")
+    vary: Any = Field(None, description="Parameter to list, range or tolerance; one variant per combination.")
     conductors: Any = Field(None, description="Name to shape and coatings.")
     dielectrics: Any = Field(None, description="Name to shape and material; later ones cover earlier ones.")
     constructions: Any = Field(None, description="Name to pair, ribbon, board ...: what cables are made of.")
@@ -150,7 +161,7 @@ def checked(
 ) -> EntryType | None:
     """An entry of a model, or None after noting every mistake in it."""
     if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the keys {listed(_keys(model))}")
+        problems.add(path, f"must be a mapping with the keys {listed(_words(model))}")
         return None
     try:
         return model.model_validate(tree, context=dict(context))
@@ -160,22 +171,24 @@ def checked(
         return None
 
 
-def _keys(model: type[Entry]) -> list[str]:
-    """The keys of a model as a file spells them."""
-    return [info.alias or name for name, info in model.model_fields.items()]
-
-
 def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -> None:
     place = path
     for key in detail["loc"]:
         place = under(place, key)
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
-        known = _keys(model)
+        known = _words(model)
         problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
+    elif detail["type"] == FOLLOWS:
+        return
     elif detail["type"] == "missing":
         problems.add(path, f"the key '{name}' is missing")
     elif detail["type"] == "value_error":
         problems.add(place, str(detail["ctx"]["error"]))
     else:
         problems.add(place, str(detail["msg"]))
+
+
+def _words(model: type[Entry]) -> list[str]:
+    """The keys of a model as they are written."""
+    return [info.alias or name for name, info in model.model_fields.items()]

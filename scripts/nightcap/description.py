@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Sized
+from collections.abc import Iterator, Sequence, Sized
 from functools import singledispatch
 
 from nightcap.digits import grouped
@@ -14,10 +14,14 @@ from nightcap.geometry.motion import Moved
 from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector
 from nightcap.lengths import length_text
 
+FIRST_VARIANTS = 4
+"""So many are named."""
+
 
 def description(case: Case, layout: Layout) -> Iterator[str]:
     """Lines about a case, with lengths in the unit that suits each."""
     yield f"  {case.title}"
+    yield from _parameters(case)
     yield "  conductors"
     for conductor in case.conductors:
         yield f"    {conductor.name}: {describe(conductor.shape)}{'; floating' if conductor.floating else ''}"
@@ -38,6 +42,24 @@ def description(case: Case, layout: Layout) -> Iterator[str]:
         f"  layout: {_count(layout.regions, 'region')}, {_count(layout.materials, 'material')},"
         f" {_count(layout.pieces, 'curve')}, {length_text(layout.size)} across"
     )
+
+
+def variant_lines(names: Sequence[str]) -> Iterator[str]:
+    """How many variants there are, and the first of them."""
+    if names[0]:
+        yield f"  {_count(names, 'variant')}, the first of which is described above"
+        yield from (f"    {name}" for name in names[:FIRST_VARIANTS])
+        if len(names) > FIRST_VARIANTS:
+            yield f"    and {len(names) - FIRST_VARIANTS} more, the last {names[-1]}"
+
+
+def _parameters(case: Case) -> Iterator[str]:
+    if case.parameters:
+        yield f"  parameters{f', in variant {case.variant_name}' if case.variant_name else ''}"
+    for one in case.parameters:
+        value = length_text(one.value) if one.is_length else f"{one.value:.6g}"
+        formula = f"{one.formula} = " if one.formula else ""
+        yield f"    {one.name} = {formula}{value}{'' if one.is_used else '; used nowhere'}"
 
 
 def _count(things: Sized, word: str) -> str:

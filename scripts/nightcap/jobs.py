@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import os
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from nightcap.geometry.errors import UsageError
@@ -19,7 +19,16 @@ class Job:
     path: str
     """As the user gave it, or below the folder that the user gave."""
     name: str
-    """Stem of the file, after its path below the folder given; the result folder has the same name."""
+    """Stem of the file, after its path below the folder given: the name of the case."""
+    variant: str = ""
+    """Name of the variant, such as ``pitch=1.22,wall=0.35``; empty for a case that varies nothing."""
+    values: tuple[tuple[str, float], ...] = ()
+    """Varied parameters of the variant and their values, SI units."""
+
+    @property
+    def folder(self) -> str:
+        """The result folder, below that of all results."""
+        return f"{self.name}/{self.variant}" if self.variant else self.name
 
 
 def find_jobs(paths: Sequence[str]) -> tuple[Job, ...]:
@@ -32,6 +41,35 @@ def find_jobs(paths: Sequence[str]) -> tuple[Job, ...]:
         raise UsageError(f"no case file (*.yaml, *.yml) found below {', '.join(paths)}")
     _refuse_shared_folders(jobs)
     return jobs
+
+
+def with_variants(jobs: Sequence[Job]) -> tuple[Job, ...]:
+    """One job for each variant of each case. A file that cannot be used at all stays one job, which will say why.
+
+    Raises UsageError if two of them share a result folder.
+    """
+    spread = tuple(one for job in jobs for one in _variants_of(job))
+    _refuse_shared_folders(spread)
+    return spread
+
+
+def _variants_of(job: Job) -> Sequence[Job]:
+    from nightcap.geometry.case_file import list_variants
+    from nightcap.geometry.errors import CaseError
+
+    try:
+        if not _may_vary(job.path):
+            return [job]
+        variants = list_variants(Path(job.path))
+    except (CaseError, OSError):
+        return [job]
+    return [replace(job, variant=name, values=tuple(values.items())) for name, values in variants] or [job]
+
+
+def _may_vary(path: str) -> bool:
+    """Whether it is worth while to read a file: most vary nothing. A backslash can hide the word in a quoted key."""
+    content = Path(path).read_bytes()
+    return b"vary" in content or b"\\" in content
 
 
 def _jobs_of(path: str) -> Iterator[Job]:
@@ -62,8 +100,8 @@ def _refuse_shared_folders(jobs: Sequence[Job]) -> None:
     owners: dict[str, Job] = {}
     clashes = []
     for job in jobs:
-        other = owners.setdefault(os.path.normcase(job.name), job)
+        other = owners.setdefault(os.path.normcase(job.folder), job)
         if other is not job:
-            clashes.append(f"{other.path} and {job.path} would share the result folder {job.name}")
+            clashes.append(f"{other.path} and {job.path} would share the result folder {job.folder}")
     if clashes:
         raise UsageError("; ".join(clashes))

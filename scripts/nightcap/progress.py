@@ -53,7 +53,7 @@ class PlainDisplay:
 
     def started(self, job: Job) -> None:
         self._begun += 1
-        complain([f"[{self._begun}/{self._total}] {job.name}"])
+        complain([f"[{self._begun}/{self._total}] {job.folder}"])
 
     def round(self, job: Job, text: str) -> None:
         pass
@@ -81,7 +81,7 @@ class LiveDisplay:
         self._progress.stop()
 
     def started(self, job: Job) -> None:
-        self._tasks[job] = self._progress.add_task(job.name, total=None, note="")
+        self._tasks[job] = self._progress.add_task(job.folder, total=None, note="")
 
     def round(self, job: Job, text: str) -> None:
         self._progress.update(self._tasks[job], note=text)

@@ -10,7 +10,7 @@ from typing import Any
 
 from nightcap import __version__
 
-LIBRARIES = ("gmsh", "matplotlib", "numpy", "pydantic", "pyyaml", "scikit-fem", "scipy")
+LIBRARIES = ("gmsh", "matplotlib", "numpy", "pydantic", "pyyaml", "scikit-fem", "scipy", "simpleeval")
 
 
 def provenance(path: str, started: datetime, seconds: float) -> dict[str, Any]:

@@ -97,6 +97,15 @@ class Result:
     provenance: Mapping[str, Any] = field(default_factory=dict)
     drawing: Drawing | None = None
     """What the picture is drawn from; stays in the process that solved the case."""
+    variant: Mapping[str, float] = field(default_factory=dict)
+    """Varied parameters and their values: m for a length, else as written."""
+    variant_name: str = ""
+    """Name of the variant; its result folder lies below that of the case."""
+
+    @property
+    def folder(self) -> str:
+        """Result folder of the case, or of its variant."""
+        return f"{self.case}/{self.variant_name}" if self.variant_name else self.case
 
     @property
     def is_good(self) -> bool:

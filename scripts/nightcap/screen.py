@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 import textwrap
+from collections import Counter
 from collections.abc import Iterator, Sequence
 
 import numpy as np
 
 from nightcap.digits import bracketed, grouped
 from nightcap.geometry.curves import Floats
+from nightcap.jobs import Job
 from nightcap.result import FAILED, MET, Capacitance, MutualCapacitance, Result
 
 WIDTH = 80
@@ -36,24 +38,59 @@ def result_lines(result: Result) -> Iterator[str]:
         yield from _wrapped(f"warning: {warning}")
 
 
+def variant_counts(jobs: Sequence[Job]) -> Iterator[str]:
+    """How much there is to do, for each case that has variants."""
+    for name, count in Counter(job.name for job in jobs if job.variant).items():
+        yield f"{_tail(name, WIDTH - 24)}: {count} {'variant' if count == 1 else 'variants'}"
+
+
+def variant_lines(result: Result) -> Iterator[str]:
+    """The line that is printed when a variant is finished, and its warnings."""
+    reached = f"; {_small(result.reached)} reached, {result.seconds.get('total', 0.0):.2f} s" if result.reached else ""
+    reason = f" ({result.reason})" if result.reason else ""
+    ending = f": {_status(result)}{reason}{reached}"
+    yield f"{_tail(result.folder, max(WIDTH - len(ending), 20))}{ending}"
+    for warning in result.warnings:
+        yield from _wrapped(f"warning: {warning}")
+
+
 def summary_lines(results: Sequence[Result]) -> Iterator[str]:
     """One line per case, and how many of each kind."""
-    width = min(max(len(result.case) for result in results), WIDTH - 55)
-    yield f"{'case':{width}}  {'requested':>9}  {'reached':>8}  {'s':>6}  status"
+    cases: dict[str, list[Result]] = {}
     for result in results:
-        requested, reached = (_small(number) for number in (result.requested, result.reached))
-        seconds = result.seconds.get("total", 0.0)
-        status = STATUS[result.status] + ("" if _as_expected(result) else ", not as expected")
-        yield f"{_tail(result.case, width):{width}}  {requested:>9}  {reached:>8}  {seconds:6.2f}  {status}"
+        cases.setdefault(result.case, []).append(result)
+    width = min(max(map(len, [*cases, "case"])), WIDTH - 55)
+    yield f"{'case':{width}}  {'requested':>9}  {'reached':>8}  {'s':>6}  status"
+    for name, group in cases.items():
+        requested, reached = (_small(_greatest(group, key)) for key in ("requested", "reached"))
+        seconds = sum(result.seconds.get("total", 0.0) for result in group)
+        status = _status_of_all(group) if group[0].variant_name else _status(group[0])
+        yield f"{_tail(name, width):{width}}  {requested:>9}  {reached:>8}  {seconds:6.2f}  {status}"
     yield summary_line(results)
 
 
+def _status(result: Result) -> str:
+    return STATUS[result.status] + ("" if _as_expected(result) else ", not as expected")
+
+
+def _status_of_all(variants: Sequence[Result]) -> str:
+    return f"{sum(result.is_good for result in variants)} of {len(variants)} met"
+
+
+def _greatest(results: Sequence[Result], key: str) -> float | None:
+    """The worst accuracy of some results."""
+    return max((number for result in results if (number := getattr(result, key)) is not None), default=None)
+
+
 def summary_line(results: Sequence[Result]) -> str:
-    """How many cases ended how."""
+    """How many cases and variants ended how."""
     counts = [f"{sum(r.status == status for r in results)} {text}" for status, text in STATUS.items()]
     disagreeing = sum(not _as_expected(r) for r in results)
     extra = f"; {disagreeing} not as expected" if disagreeing else ""
-    return f"{len(results)} {'case' if len(results) == 1 else 'cases'}: {', '.join(counts)}{extra}"
+    cases = len({result.case for result in results})
+    word = "case" if cases == 1 else "cases"
+    variants = f", {len(results)} variants in all" if any(result.variant_name for result in results) else ""
+    return f"{cases} {word}{variants}: {', '.join(counts)}{extra}"
 
 
 def _as_expected(result: Result) -> bool:

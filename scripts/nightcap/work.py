@@ -41,7 +41,7 @@ class Work:
             seconds={**result.seconds, "total": seconds},
             provenance=provenance(job.path, started, seconds),
         )
-        result = write_outputs(result, self.out / job.name, job.path, pictures=self.pictures)
+        result = write_outputs(_marked(result, job), self.out / job.folder, job.path, pictures=self.pictures)
         return replace(result, drawing=None)
 
     def failed(self, job: Job, text: str) -> Result:
@@ -49,16 +49,14 @@ class Work:
         from nightcap.outputs import write_outputs
 
         result = failed_result(job.name, (Problem(job.path, None, "", text),))
-        result = replace(result, provenance=provenance(job.path, datetime.now(UTC), 0.0))
-        return write_outputs(result, self.out / job.name, job.path, pictures=False)
+        result = replace(_marked(result, job), provenance=provenance(job.path, datetime.now(UTC), 0.0))
+        return write_outputs(result, self.out / job.folder, job.path, pictures=False)
 
     def _solve(self, job: Job, tell: Tell) -> Result:
         """The steps; every way in which they fail becomes a failed result."""
         case = None
         try:
-            from nightcap.geometry.case_file import read_case
-
-            case = self._with_accuracy(read_case(Path(job.path)))
+            case = self._with_accuracy(_read(job))
             return self._solved(job, case, tell)
         except CaseError as error:
             return failed_result(job.name, error.problems, case)
@@ -87,6 +85,25 @@ class Work:
 
     def _with_accuracy(self, case: Case) -> Case:
         return case if self.accuracy is None else replace(case, accuracy=self.accuracy)
+
+
+def _read(job: Job) -> Case:
+    """The case of a job. Raises CaseError."""
+    if job.variant:
+        from nightcap.geometry.case_file import read_variant
+
+        return read_variant(Path(job.path), job.variant)
+    from nightcap.geometry.case_file import read_case
+
+    case = read_case(Path(job.path))
+    if case.variant_name:
+        raise CaseError([Problem(job.path, None, "vary", "was not there when the run began; start it again")])
+    return case
+
+
+def _marked(result: Result, job: Job) -> Result:
+    """The result with the variant that it belongs to."""
+    return replace(result, variant=dict(job.values), variant_name=job.variant)
 
 
 def round_text(r: Any) -> str:

@@ -133,7 +133,7 @@ FAULTS = {
     "coating on a hollow polygon": (
         changed(
             "    shape: circle\n    radius: 0.2\n    at: [0.6, 0]\n",
-            "    shape: polygon\n    points: [[0, 0], [1, 0], [0.05, 0.05], [0, 1]]\n",
+            "    shape: polygon\n    points: [[0, 0], [3, 0], [3, 9], [2, 9], [2, 1], [1.9, 1], [1.9, 9], [0, 9]]\n",
         ),
         9,
         "conductors.white.coatings[0]",
@@ -235,9 +235,6 @@ FAULTS = {
         "as many columns",
     ),
     "title as list": (BASE + "title: [a]\n", 12, "title", "must be text"),
-    "parameters": (BASE + "parameters: {pitch: 1}\n", 12, "parameters", "not available in this version"),
-    "vary": (BASE + "vary: {pitch: [1]}\n", 12, "vary", "not available in this version"),
-    "like": (changed("shape: circle, radius: 0.2,", "like: white,"), 4, "conductors.red.like", "not available"),
 }
 
 

@@ -6,7 +6,8 @@ import numpy as np
 import pytest
 
 from nightcap.geometry.build_layout import build_layout
-from nightcap.geometry.case_file import read_case
+from nightcap.geometry.case import Case
+from nightcap.geometry.case_file import read_case, read_variants
 from nightcap.solver.solve import solve
 
 CASES = Path(__file__).parents[2] / "cases"
@@ -15,7 +16,11 @@ FILES = sorted(CASES.rglob("*.yaml"))
 
 @pytest.mark.parametrize("path", FILES, ids=lambda path: path.relative_to(CASES).with_suffix("").as_posix())
 def test_shipped_case(path: Path) -> None:
-    case = read_case(path)
+    for case in read_variants(path):
+        check(case)
+
+
+def check(case: Case) -> None:
     floating = tuple(conductor.name for conductor in case.conductors if conductor.floating)
     solution = solve(build_layout(case), case.accuracy, case.limits, floating, case.ties)
     assert solution.status == "met", solution.reason

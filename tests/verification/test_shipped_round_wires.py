@@ -14,7 +14,7 @@ from multipoles import InOpenSpace, InShield, OverPlane, Surroundings, Wire, cap
 
 from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.case import Case, GroundPlane, OpenSpace, Shield
-from nightcap.geometry.case_file import read_case
+from nightcap.geometry.case_file import read_case, read_variants
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.shapes import Circle
 from nightcap.solver.solve import solve
@@ -101,12 +101,18 @@ SUITABLE = suitable()
 
 def test_enough_cases_are_suitable() -> None:
     assert len(SUITABLE) >= LEAST_NUMBER
-    assert {"drain-wire", "sensor-bundle", "wires-over-plane", "eccentric-core"} <= {path.stem for path in SUITABLE}
+    assert {"drain-wire", "sensor-bundle", "wires-over-plane", "eccentric-core", "pair-tolerances"} <= {
+        path.stem for path in SUITABLE
+    }
 
 
 @pytest.mark.parametrize("path", SUITABLE, ids=lambda path: path.relative_to(CASES).with_suffix("").as_posix())
 def test_the_exact_matrix_lies_inside_the_bracket(path: Path) -> None:
-    case = read_case(path)
+    for case in read_variants(path):
+        check_against_multipoles(case)
+
+
+def check_against_multipoles(case: Case) -> None:
     round_wires, around = wires(case), surroundings(case)
     assert round_wires is not None
     assert around is not None

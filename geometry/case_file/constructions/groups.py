@@ -6,12 +6,12 @@ import math
 from collections.abc import Callable, Sequence
 from typing import Annotated, Any
 
-from pydantic import BeforeValidator, Field
+from pydantic import BeforeValidator, Field, ValidationInfo
 
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.wires import overall_size, placed, read_wire
-from nightcap.geometry.case_file.quantities import Degrees, PointOf, PositiveLength
+from nightcap.geometry.case_file.quantities import Degrees, PointOf, PositiveLength, whole
 from nightcap.geometry.case_file.schema import Entry, MaterialKeys, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
@@ -23,10 +23,8 @@ Sites = Callable[[int, float], list[Point]]
 """From the number of wires and the distance of neighbours, m, to their centres."""
 
 
-def _wires(value: object) -> int:
-    if isinstance(value, bool) or not isinstance(value, int) or not 2 <= value <= MOST_WIRES:
-        raise ValueError(f"must be a whole number from 2 to {MOST_WIRES}")
-    return value
+def _wires(value: object, info: ValidationInfo) -> int:
+    return whole(value, 2, MOST_WIRES, info)
 
 
 def _names(value: object) -> tuple[str, ...]:

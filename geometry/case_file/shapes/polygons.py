@@ -6,9 +6,9 @@ import math
 from itertools import combinations
 from typing import Annotated
 
-from pydantic import BeforeValidator, Field, model_validator
+from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from nightcap.geometry.case_file.quantities import LengthFromZero, PlainNumber, Points, PositiveLength
+from nightcap.geometry.case_file.quantities import LengthFromZero, PlainNumber, Points, PositiveLength, whole
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys, TurnedKeys, exactly_one
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
@@ -41,10 +41,8 @@ class PolygonKeys(ShapeKeys):
         return Polygon(self.points, self.corner_radius)
 
 
-def _sides(value: object) -> int:
-    if isinstance(value, bool) or not isinstance(value, int) or not 3 <= value <= 100:
-        raise ValueError("must be a whole number from 3 to 100")
-    return value
+def _sides(value: object, info: ValidationInfo) -> int:
+    return whole(value, 3, 100, info)
 
 
 class RegularPolygonKeys(TurnedKeys):

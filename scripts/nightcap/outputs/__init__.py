@@ -40,7 +40,7 @@ def write_outputs(result: Result, folder: Path, path: str, *, pictures: bool) ->
     """
     try:
         folder.mkdir(parents=True, exist_ok=True)
-        _clear(folder)
+        clear_folder(folder)
     except OSError as error:
         return _unwritten(result, path, error)
     for output in OUTPUTS:
@@ -50,14 +50,14 @@ def write_outputs(result: Result, folder: Path, path: str, *, pictures: bool) ->
             output.write(result, folder)
         except Exception as error:  # numbers must not be lost because a picture cannot be drawn
             if output.is_essential:
-                _clear(folder)
+                clear_folder(folder)
                 return _unwritten(result, path, error)
             text = f"{output.file} was not written: {type(error).__name__}: {error}"
             result = replace(result, warnings=(*result.warnings, text))
     return result
 
 
-def _clear(folder: Path) -> None:
+def clear_folder(folder: Path) -> None:
     """Takes away what an earlier run left: first result.json, so that no folder ever mixes two runs."""
     for output in reversed(OUTPUTS):
         (folder / output.file).unlink(missing_ok=True)

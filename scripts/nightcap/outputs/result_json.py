@@ -37,7 +37,7 @@ def result_document(result: Result) -> dict[str, Any]:
         "schema": SCHEMA,
         "title": result.title,
         "case": result.case,
-        "variant": {},
+        "variant": dict(result.variant),
         "status": result.status,
         "reason": result.reason,
         "conductors": list(C.conductors) if C else [],
