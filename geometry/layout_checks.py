@@ -9,12 +9,13 @@ from itertools import combinations
 import numpy as np
 from scipy.spatial import cKDTree
 
-from nightcap.geometry.arrangement import Arrangement
-from nightcap.geometry.case import Case, GroundPlane, OpenSpace
+from nightcap.geometry.arrangement import Arrangement, CutPiece
+from nightcap.geometry.case import Case, GroundPlane
 from nightcap.geometry.crossing import CurveTable
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import Problem
 from nightcap.geometry.mesh import Ints
+from nightcap.geometry.outside import Finding, what_lies_outside
 from nightcap.geometry.painting import Drawing
 
 SMALLEST_GAP = 1e-6
@@ -28,9 +29,10 @@ def find_problems(
 
     members : for each loop of the arrangement the outlines around the face on its left.
     """
-    found = dict.fromkeys(_overlaps(case, drawing, set(members)))
+    found = dict.fromkeys(what_lies_outside(case, drawing))
+    found |= dict.fromkeys(_overlaps(case, drawing, {face for face in members if _is_kept(drawing, face)}))
     overlapping = {text_key for text_key, _, _ in found}
-    contacts = [c for c in _contacts(case, drawing, plane) if c[0] not in overlapping]
+    contacts = [c for c in _contacts(case, drawing, plane, members) if c[0] not in overlapping]
     found |= dict.fromkeys(contacts)
     touching = overlapping | {c[0] for c in contacts}
     found |= dict.fromkeys(c for c in _narrow_gaps(case, drawing) if c[0] not in touching)
@@ -38,12 +40,13 @@ def find_problems(
     return tuple(sorted(problems, key=lambda problem: problem.line or 0))
 
 
-Finding = tuple[tuple[str, str], str, str]
-"""The pair that is in conflict, the key to blame, and the message."""
-
-
 def _boundary_name(case: Case) -> str:
-    return "" if isinstance(case.boundary, OpenSpace) else case.boundary.name
+    return case.outer_conductor or ""
+
+
+def _is_kept(drawing: Drawing, inside: frozenset[int]) -> bool:
+    """Whether a face lies on the side of the symmetry lines that is solved."""
+    return drawing.around - {len(drawing.drawn)} <= inside
 
 
 def _overlaps(case: Case, drawing: Drawing, faces: set[frozenset[int]]) -> Iterator[Finding]:
@@ -67,7 +70,7 @@ class _Claim:
     def of(cls, drawing: Drawing, inside: frozenset[int]) -> _Claim:
         domain = len(drawing.drawn)
         conductors, coats = set(), {}
-        for number in sorted(inside - {domain}):  # the innermost coating is painted last
+        for number in sorted(inside - drawing.around):  # the innermost coating is painted last
             drawn = drawing.drawn[number]
             if drawn.conductor is not None and drawn.material is None:
                 conductors.add(drawn.conductor)
@@ -120,14 +123,18 @@ def _coat_sticks_out(case: Case) -> str:
     return f"cuts into the shield '{_boundary_name(case)}'; it may touch it at most"
 
 
-def _contacts(case: Case, drawing: Drawing, plane: Arrangement) -> Iterator[Finding]:
+def _contacts(
+    case: Case, drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]
+) -> Iterator[Finding]:
     """Conductors that meet in a point or along an edge: a short circuit."""
     names = [c.name for c in case.conductors]
     at: dict[int, set[str]] = {}
-    for piece in plane.pieces:
+    for k, piece in enumerate(plane.pieces):
+        if not any(_is_kept(drawing, members[plane.loop_of[half]]) for half in (2 * k, 2 * k + 1)):
+            continue
         for number, _ in piece.outlines:
-            name = _surface_name(case, drawing, names, number)
-            if name and not (number == len(drawing.drawn) and drawing.rim and piece.curve.curvature):
+            name = _surface_name(case, drawing, names, number, piece)
+            if name:
                 at.setdefault(piece.start, set()).add(name)
                 at.setdefault(piece.end, set()).add(name)
     order = [*names, _boundary_name(case)]
@@ -138,20 +145,28 @@ def _contacts(case: Case, drawing: Drawing, plane: Arrangement) -> Iterator[Find
             yield (a, b), key, f"touches '{other}': a short circuit; leave a gap, or draw them as one conductor"
 
 
-def _surface_name(case: Case, drawing: Drawing, names: list[str], number: int) -> str:
-    if number == len(drawing.drawn):
-        return _boundary_name(case)
+def _surface_name(case: Case, drawing: Drawing, names: list[str], number: int, piece: CutPiece) -> str:
+    """The conductor on whose surface a piece lies as part of an outline, or nothing."""
+    if number in drawing.around:
+        rim = number == len(drawing.drawn) and drawing.domain.rim and piece.curve.curvature
+        return "" if rim or _is_magnetic(case, drawing, number, piece) else _boundary_name(case)
     conductor = drawing.drawn[number].conductor
     return names[conductor] if conductor is not None and _is_conductor(drawing, number) else ""
+
+
+def _is_magnetic(case: Case, drawing: Drawing, number: int, piece: CutPiece) -> bool:
+    if number == len(drawing.drawn):
+        return False
+    middle = piece.curve.at(np.array(0.5))
+    on = [line for line in case.symmetry if abs(middle[line.axis] - line.at) <= 16 * drawing.tolerance]
+    return not any(line.is_electric for line in on)
 
 
 def _narrow_gaps(case: Case, drawing: Drawing) -> Iterator[Finding]:
     """Pairs of conductors closer than the smallest gap."""
     least = SMALLEST_GAP * drawing.size
     surfaces = [(d.conductor, d.outline) for d in drawing.drawn if d.material is None]
-    if not isinstance(case.boundary, OpenSpace):
-        floor = drawing.domain[:1] if drawing.rim else drawing.domain
-        surfaces.append((len(case.conductors), floor))
+    surfaces += [(len(case.conductors), surface) for surface in drawing.domain.grounded]
     owner = np.array([conductor for conductor, outline in surfaces for _ in outline])
     table = CurveTable([curve for _, outline in surfaces for curve in outline])
     names = [*(c.name for c in case.conductors), _boundary_name(case)]
