@@ -31,6 +31,11 @@ class Entry(BaseModel):
 EntryType = TypeVar("EntryType", bound=Entry)
 
 
+def words_of(model: type[Entry]) -> list[str]:
+    """The keys of an entry as they are written: some are no Python names."""
+    return [field.alias or name for name, field in model.model_fields.items()]
+
+
 def _text(value: object) -> str:
     if not isinstance(value, str):
         raise ValueError("must be text; put it in quotes")
@@ -78,6 +83,16 @@ def _matrix(value: object) -> tuple[tuple[float, ...], ...]:
     if any(len(row) != len(value) for row in value):
         raise ValueError("must have as many columns as rows")
     return tuple(tuple(float(x) for x in row) for row in value)
+
+
+def _reference(value: object) -> tuple[str, ...]:
+    if not isinstance(value, list):
+        return (_text(value),)
+    if not value or any(not isinstance(name, str) for name in value):
+        raise ValueError("must be the name of a conductor, or a list of names, e.g. [screen, drain]")
+    if len(set(value)) < len(value):
+        raise ValueError("names a conductor twice")
+    return tuple(value)
 
 
 Text = Annotated[str, BeforeValidator(_text)]
@@ -137,8 +152,12 @@ class CaseEntry(Entry):
     conductors: Any = Field(description="Name to shape and coatings.")
     dielectrics: Any = Field(None, description="Name to shape and material; later ones cover earlier ones.")
     background: Any = Field(None, description="Material of all that is not drawn.")
-    boundary: Any = Field(description="Shield, open space or ground plane.")
-    reference: Text | None = Field(None, description="The conductor that the matrix is relative to.")
+    boundary: Any = Field(description="Shield, box, open space or ground plane.")
+    reference: Annotated[tuple[str, ...], BeforeValidator(_reference)] = Field(
+        (), description="The conductor that the matrix is relative to, or a list of them that are one."
+    )
+    symmetry: Any = Field(None, description="Lines of symmetry; what lies on the greater side of each is solved.")
+    twist: Any = Field(None, description="Lay length and pitch circle of twisted cores.")
     tie: Annotated[tuple[tuple[str, ...], ...], BeforeValidator(_names)] = ()
     limits: Any = None
     expect: Any = None
@@ -149,7 +168,7 @@ def checked(
 ) -> EntryType | None:
     """An entry of a model, or None after noting every mistake in it."""
     if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the keys {listed(model.model_fields)}")
+        problems.add(path, f"must be a mapping with the keys {listed(words_of(model))}")
         return None
     try:
         return model.model_validate(tree, context=dict(context))
@@ -165,7 +184,7 @@ def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -
         place = under(place, key)
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
-        known = list(model.model_fields)
+        known = words_of(model)
         problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
     elif detail["type"] == "missing":
         problems.add(path, f"the key '{name}' is missing")

@@ -13,6 +13,7 @@ from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
 from nightcap.geometry.case_file.quantities import (
     Degrees,
     Gauge,
+    Length,
     LengthFromZero,
     PointOf,
     Points,
@@ -22,6 +23,7 @@ from nightcap.geometry.case_file.schema import Entry, EntryType, Text, checked
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import Circle, Polygon, Rectangle, Shape, signed_area
+from nightcap.geometry.slab import Slab
 
 
 class ShapeKeys(Entry):
@@ -103,23 +105,59 @@ class PolygonKeys(ShapeKeys):
         return Polygon(self.points)
 
 
-SHAPES: dict[str, type[ShapeKeys]] = {"circle": CircleKeys, "rectangle": RectangleKeys, "polygon": PolygonKeys}
+class SlabKeys(ShapeKeys):
+    """A layer between two heights that runs to infinity."""
+
+    low: Length | None = Field(None, alias="from", description="Height of its lower edge; without it: no lower end.")
+    high: Length | None = Field(None, alias="to", description="Height of its upper edge; without it: no upper end.")
+
+    @model_validator(mode="after")
+    def _has_edges(self) -> SlabKeys:
+        if self.low is None and self.high is None:
+            raise ValueError("needs from, to or both; a dielectric that fills all space is the background")
+        if self.low is not None and self.high is not None and self.low >= self.high:
+            raise ValueError("from must be less than to")
+        return self
+
+    def figure(self) -> Slab:
+        """The slab."""
+        low = -math.inf if self.low is None else self.low
+        return Slab(low, math.inf if self.high is None else self.high)
+
+
+SHAPES: dict[str, type[ShapeKeys]] = {
+    "circle": CircleKeys,
+    "rectangle": RectangleKeys,
+    "polygon": PolygonKeys,
+    "slab": SlabKeys,
+}
 """A new shape is one more class and one more line here."""
+ONLY_FOR = {"slab": "dielectrics"}
+"""The one group of entries that a shape is for."""
+
+
+def _words_for(path: str) -> list[str]:
+    """The shapes that an entry may have."""
+    return [word for word in SHAPES if path.startswith(ONLY_FOR.get(word, ""))]
 
 
 def shaped(
     own: type[EntryType], tree: Tree, path: str, problems: Problems, context: dict[str, Any]
 ) -> tuple[EntryType, Shape] | None:
     """An entry that has a shape besides keys of its own, or None after noting every mistake in it."""
+    words = _words_for(path)
     if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the key 'shape' ({listed(SHAPES)}) and the keys of that shape")
+        problems.add(path, f"must be a mapping with the key 'shape' ({listed(words)}) and the keys of that shape")
         return None
     word = tree.get("shape")
     if not isinstance(word, str) or word not in SHAPES:
         if "shape" in tree:
-            problems.add(under(path, "shape"), one_of(word, SHAPES))
+            problems.add(under(path, "shape"), one_of(word, words))
         else:
-            problems.add(path, f"the key 'shape' is missing; allowed: {listed(SHAPES)}")
+            problems.add(path, f"the key 'shape' is missing; allowed: {listed(words)}")
+        return None
+    if word not in words:
+        problems.add(under(path, "shape"), f"'{word}' is a shape for {ONLY_FOR[word]} only; allowed: {listed(words)}")
         return None
     entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
     return None if entry is None else (entry, entry.figure())

@@ -44,7 +44,7 @@ class FluxSheet:
 
 def flux_sheet(corners: Floats, flux: Floats, far: Flags, rim: Rim | None, size: float) -> FluxSheet:
     """Finds which triangles touch, also across the rim. size : of the layout, m; corners agree to 1e-9 of it."""
-    grid = np.rint(corners.reshape(-1, 2) / (1e-9 * size)).astype(np.int64)
+    grid = np.rint(_drawn_in(corners.reshape(-1, 2), size) / (1e-9 * size)).astype(np.int64)
     sheet = np.repeat(far, 3).astype(np.int64)
     labels = _labels(grid[:, 0], grid[:, 1], sheet).reshape(-1, 3)
     neighbour = _partners(labels, np.ones(labels.shape, dtype=bool))
@@ -79,6 +79,12 @@ def unfolded(points: Floats, rim: Rim | None) -> Floats:
     direction = np.where(distance > 0, away / np.maximum(distance, 1e-300), [1.0, 0.0])
     true: Floats = np.asarray(centre) + direction * radius**2 / np.maximum(distance, 1e-3 * radius)
     return true
+
+
+def _drawn_in(points: Floats, size: float) -> Floats:
+    """Points (n, 2) with their distances from the middle made logarithmic: far away, they agree less closely."""
+    away = points - np.median(points, axis=0)
+    return np.asarray(np.sign(away) * size * np.log1p(np.abs(away) / size))
 
 
 def _labels(*columns: Ints) -> Ints:
@@ -116,7 +122,7 @@ def _starts(sheet: FluxSheet, surface: Flags, count: int) -> Iterator[tuple[int,
 
 
 def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
-    """Edges of a surface as they follow each other, from where the field is strongest."""
+    """Edges of a surface as they follow each other: from its open end, if it has one, else from the strongest field."""
     first, last = sheet.labels.reshape(-1), np.roll(sheet.labels, -1, axis=1).reshape(-1)
     step = np.roll(sheet.corners, -1, axis=1) - sheet.corners
     length = np.hypot(step[..., 0], step[..., 1]).reshape(-1)
@@ -125,7 +131,8 @@ def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
     for edge in edges.tolist():
         for end in (int(first[edge]), int(last[edge])):
             touching.setdefault(end, []).append(edge)
-    left = dict.fromkeys(edges[np.argsort(-strength[edges], kind="stable")].tolist())
+    is_inner = np.isin(first[edges], last[edges])
+    left = dict.fromkeys(edges[np.lexsort((-strength[edges], is_inner))].tolist())
     ordered = []
     while left:
         current: int | None = next(iter(left))
