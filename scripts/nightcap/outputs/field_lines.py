@@ -113,16 +113,20 @@ def _partners(labels: Ints, wanted: Flags) -> Ints:
 
 def _starts(sheet: FluxSheet, surface: Flags, count: int) -> Iterator[tuple[int, float]]:
     """Edges, and the fraction along each, that cut the charge of a surface into equal parts."""
-    edges = _in_order(sheet, np.flatnonzero(surface))
+    edges, along = _in_order(sheet, np.flatnonzero(surface))
     charge = np.abs(np.roll(sheet.flux, -1, axis=1) - sheet.flux).reshape(-1)[edges]
     reached = np.concatenate([[0.0], np.cumsum(charge)])
     for level in (np.arange(count) + 0.5 + ASIDE) / count * reached[-1]:
         k = min(int(np.searchsorted(reached, level, side="right")) - 1, len(edges) - 1)
-        yield int(edges[k]), float((level - reached[k]) / charge[k]) if charge[k] > 0 else 0.5
+        fraction = float((level - reached[k]) / charge[k]) if charge[k] > 0 else 0.5
+        yield int(edges[k]), fraction if along[k] else 1.0 - fraction
 
 
-def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
-    """Edges of a surface as they follow each other: from its open end, if it has one, else from the strongest field."""
+def _in_order(sheet: FluxSheet, edges: Ints) -> tuple[Ints, Flags]:
+    """Edges of a surface as they follow each other, and whether each is walked from its first end to its last.
+
+    From an open end, if the surface has one, else from where the field is strongest.
+    """
     first, last = sheet.labels.reshape(-1), np.roll(sheet.labels, -1, axis=1).reshape(-1)
     step = np.roll(sheet.corners, -1, axis=1) - sheet.corners
     length = np.hypot(step[..., 0], step[..., 1]).reshape(-1)
@@ -131,19 +135,20 @@ def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
     for edge in edges.tolist():
         for end in (int(first[edge]), int(last[edge])):
             touching.setdefault(end, []).append(edge)
-    is_inner = np.isin(first[edges], last[edges])
+    is_inner = [len(touching[a]) > 1 < len(touching[b]) for a, b in zip(first[edges], last[edges], strict=True)]
     left = dict.fromkeys(edges[np.lexsort((-strength[edges], is_inner))].tolist())
-    ordered = []
+    ordered, along = [], []
     while left:
         current: int | None = next(iter(left))
-        end = -1
+        assert current is not None  # noqa: S101 - there is one left
+        start = int(last[current]) if len(touching[int(last[current])]) == 1 else int(first[current])
         while current is not None:
             del left[current]
             ordered.append(current)
-            ends = (int(first[current]), int(last[current]))
-            end = ends[0] if end == ends[1] else ends[1]
-            current = next((e for e in touching[end] if e in left), None)
-    return np.array(ordered, dtype=np.int64)
+            along.append(start == int(first[current]))
+            start = int(last[current] if along[-1] else first[current])
+            current = next((e for e in touching[start] if e in left), None)
+    return np.array(ordered, dtype=np.int64), np.array(along, dtype=np.bool_)
 
 
 def _follow(sheet: FluxSheet, edge: int, fraction: float) -> tuple[list[Floats], list[bool]]:
