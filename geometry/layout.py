@@ -71,7 +71,7 @@ class FarWall:
     reach: float
     """From the middle of the layout to each side of the square, m."""
     conductor: int | None
-    """The conductor that reaches to infinity, whose potential the wall then has; None if the wall's potential floats."""
+    """The conductor that reaches to infinity, whose potential the wall has; None if the wall's potential floats."""
 
 
 @dataclass(frozen=True, eq=False)

@@ -123,9 +123,7 @@ def _coat_sticks_out(case: Case) -> str:
     return f"cuts into the shield '{_boundary_name(case)}'; it may touch it at most"
 
 
-def _contacts(
-    case: Case, drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]
-) -> Iterator[Finding]:
+def _contacts(case: Case, drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]) -> Iterator[Finding]:
     """Conductors that meet in a point or along an edge: a short circuit."""
     names = [c.name for c in case.conductors]
     at: dict[int, set[str]] = {}

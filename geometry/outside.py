@@ -21,7 +21,9 @@ def what_lies_outside(case: Case, drawing: Drawing) -> Iterator[Finding]:
         for drawn in _bodies(drawing):
             if _top(drawn)[line.axis] <= line.at + tolerance:
                 what = "xy"[line.axis]
-                text = f"lies beyond the symmetry line {what} = {line.at:g} m; what has {what} >= {line.at:g} m is solved"
+                text = (
+                    f"lies beyond the symmetry line {what} = {line.at:g} m; what has {what} >= {line.at:g} m is solved"
+                )
                 yield (drawn.key, str(line)), drawn.key, text
     if isinstance(case.boundary, GroundPlane):
         for drawn in _bodies(drawing):

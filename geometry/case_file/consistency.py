@@ -26,7 +26,9 @@ def check_case(case: Case, problems: Problems) -> None:
     if outer is not None:
         if outer in names:
             key = f"conductors.{outer}" if isinstance(case.boundary, OpenSpace) else "boundary.name"
-            problems.add(key, f"'{outer}' is the name of {'the wall' if key != 'boundary.name' else 'a conductor'} already")
+            problems.add(
+                key, f"'{outer}' is the name of {'the wall' if key != 'boundary.name' else 'a conductor'} already"
+            )
         names.append(outer)
     elif len(names) < 2:
         problems.add("conductors", "in open space there must be at least two: the charge of one returns to another")
