@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from itertools import combinations
 
 import numpy as np
-from scipy.spatial import cKDTree
 
 from nightcap.geometry.arrangement import Arrangement, CutPiece
 from nightcap.geometry.case import Case, GroundPlane
@@ -195,19 +194,26 @@ def _near_pairs(table: CurveTable, owner: Ints, margin: float) -> list[tuple[int
 
 
 def _distance(table: CurveTable, one: int, two: int) -> float:
-    """Distance of two curves that do not meet: the nearest of samples, then closer and closer around them."""
-    samples = np.linspace(0.0, 1.0, 257)
-    distances, nearest = cKDTree(_along(table, two, samples)).query(_along(table, one, samples))
-    k = int(np.argmin(distances))
-    t, u, step = float(samples[k]), float(samples[nearest[k]]), 1 / 256
-    least = float(distances[k])
+    """Distance of two curves that do not meet: the nearest of samples on one, then closer and closer around it."""
+    t, step = np.linspace(0.0, 1.0, 257), 1 / 256
     for _ in range(12):
-        around = np.linspace(-step, step, 9)
-        ts, us = np.clip(t + around, 0.0, 1.0), np.clip(u + around, 0.0, 1.0)
-        apart = np.hypot(*(_along(table, one, ts)[:, None] - _along(table, two, us)[None]).transpose(2, 0, 1))
-        i, j = np.unravel_index(int(np.argmin(apart)), apart.shape)
-        t, u, step, least = float(ts[i]), float(us[j]), step / 4, float(apart.min())
-    return least
+        apart = _distances_to(table, two, _along(table, one, t))
+        nearest = t[int(np.argmin(apart))]
+        t, step = np.clip(nearest + step * np.linspace(-1.0, 1.0, 17), 0.0, 1.0), step / 8
+    return float(apart.min())
+
+
+def _distances_to(table: CurveTable, k: int, x: Floats) -> Floats:
+    """(n,) distances of points x (n, 2) from a curve."""
+    start, end = table.start[k], table.end[k]
+    if table.radius[k] == 0:
+        along = np.clip(((x - start) @ (end - start)) / table.length[k] ** 2, 0.0, 1.0)
+        return np.asarray(np.hypot(*(x - start - along[:, None] * (end - start)).T))
+    away = x - table.centre[k]
+    turned = np.sign(table.sweep[k]) * (np.arctan2(away[:, 1], away[:, 0]) - table.angle[k])
+    beside = np.mod(turned, 2 * np.pi) <= np.abs(table.sweep[k])
+    to_ends = np.minimum(np.hypot(*(x - start).T), np.hypot(*(x - end).T))
+    return np.where(beside, np.abs(np.hypot(*away.T) - table.radius[k]), to_ends)
 
 
 def _along(table: CurveTable, k: int, t: Floats) -> Floats:
