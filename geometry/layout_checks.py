@@ -213,7 +213,7 @@ def _distances_to(table: CurveTable, k: int, x: Floats) -> Floats:
     turned = np.sign(table.sweep[k]) * (np.arctan2(away[:, 1], away[:, 0]) - table.angle[k])
     beside = np.mod(turned, 2 * np.pi) <= np.abs(table.sweep[k])
     to_ends = np.minimum(np.hypot(*(x - start).T), np.hypot(*(x - end).T))
-    return np.where(beside, np.abs(np.hypot(*away.T) - table.radius[k]), to_ends)
+    return np.asarray(np.where(beside, np.abs(np.hypot(*away.T) - table.radius[k]), to_ends))
 
 
 def _along(table: CurveTable, k: int, t: Floats) -> Floats:

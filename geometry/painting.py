@@ -72,7 +72,7 @@ def paint(case: Case) -> Drawing:
 
 def _painted_conductors(case: Case) -> list[Drawn]:
     """Coatings from the outside in, one conductor after the other; then the conductors."""
-    drawn = []
+    drawn: list[Drawn] = []
     for number, conductor in enumerate(case.conductors):
         thickness = 0.0
         coats = []

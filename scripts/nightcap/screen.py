@@ -28,9 +28,9 @@ def result_lines(result: Result) -> Iterator[str]:
     if result.status != FAILED and C is not None and mutual is not None:
         yield from _wrapped(_how_solved(result))
         if len(C.conductors) <= WHOLE_MATRIX:
-            yield from _whole_matrices(C, mutual, result.reference)
+            yield from _whole_matrices(C, mutual, _reference(result))
         else:
-            yield from _each_conductor(C, mutual, result.reference)
+            yield from _each_conductor(C, mutual, _reference(result))
         yield from _twist(result)
     if result.comparison is not None:
         yield from _wrapped(str(result.comparison))
@@ -64,9 +64,13 @@ def _as_expected(result: Result) -> bool:
     return result.comparison is None or result.comparison.agrees
 
 
+def _reference(result: Result) -> str | None:
+    return ", ".join(result.reference_pieces) or result.reference
+
+
 def _how_solved(result: Result) -> str:
     parts = [
-        f"reference {', '.join(result.reference_pieces) or result.reference}",
+        f"reference {_reference(result)}",
         f"accuracy {_small(result.requested)} requested, {_small(result.reached)} reached",
     ]
     if result.mesh:

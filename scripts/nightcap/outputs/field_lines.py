@@ -135,7 +135,9 @@ def _in_order(sheet: FluxSheet, edges: Ints) -> tuple[Ints, Flags]:
     for edge in edges.tolist():
         for end in (int(first[edge]), int(last[edge])):
             touching.setdefault(end, []).append(edge)
-    is_inner = [len(touching[a]) > 1 < len(touching[b]) for a, b in zip(first[edges], last[edges], strict=True)]
+    is_inner = np.array(
+        [len(touching[a]) > 1 < len(touching[b]) for a, b in zip(first[edges], last[edges], strict=True)]
+    )
     left = dict.fromkeys(edges[np.lexsort((-strength[edges], is_inner))].tolist())
     ordered, along = [], []
     while left:

@@ -41,8 +41,8 @@ def conductor_loops(layout: Layout, conductor: int, lines: Sequence[SymmetryLine
         loop = list(_loop(layout, leaving, heads.pop() if heads else next(iter(leaving))))
         points = np.concatenate([_walked(layout, step)[:-1] for step in loop])
         if _end(layout, loop[-1]) != _start(layout, loop[0]):
-            ends = [_walked(layout, loop[-1])[-1], points[0]]
-            points = np.concatenate([points, ends[:1], _corner_between(*ends, lines)])
+            tail = _walked(layout, loop[-1])[-1]
+            points = np.concatenate([points, [tail], _corner_between(tail, points[0], lines)])
         loops.append(points)
     return loops
 

@@ -37,7 +37,7 @@ HUE = "#0072b2"
 STYLES = (("1.0", ""), ("0.93", "...."), ("0.87", "////"), ("0.95", "xxxx"), ("0.81", "||||"), ("0.90", "\\\\\\\\"))
 """Tone and hatch of the materials, in turn."""
 HATCH = "0.72"
-MAGNETIC = {"color": "0.15", "linewidth": 1.0, "linestyle": (0, (8, 2, 1, 2)), "zorder": 7}
+MAGNETIC: dict[str, Any] = {"color": "0.15", "linewidth": 1.0, "linestyle": (0, (8, 2, 1, 2)), "zorder": 7}
 """Lines of symmetry that no flux passes."""
 
 
@@ -287,7 +287,7 @@ def _legend(figure: Figure, drawing: Drawing) -> None:
 
 
 def _conductor_label(drawing: Drawing) -> str:
-    reference = _literal(drawing.layout.conductors[drawing.layout.reference])
+    reference = _literal(", ".join(drawing.case.reference_pieces))
     return f"conductors; reference, 0 V: {reference}"
 
 
