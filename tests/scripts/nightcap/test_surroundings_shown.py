@@ -64,7 +64,7 @@ def test_twist_is_reported_per_metre_of_core_and_of_cable() -> None:
     lines = list(result_lines(result))
     text = " ".join(" ".join(lines).split())
     for part in (
-        "1 m of cable holds 1.004431 m of each core",
+        "1 m of cable holds 1.004432 m of each core",
         "Maxwell capacitance per metre of cable",
         "on the diagonal to the reference, box, drain",
         "not in the mean over a lay",
@@ -87,7 +87,7 @@ def test_check_repeats_all_of_it() -> None:
     for part in (
         "shield 'box', inside: rectangle, 4 mm x 4 mm",
         "reference: box, drain",
-        "twist: lay length 40 mm, pitch circle 1.2 mm; 1.004431 m of core per metre of cable",
+        "twist: lay length 40 mm, pitch circle 1.2 mm; 1.004432 m of core per metre of cable",
         "water: half space below y = 0 mm",
         "ice: slab without end, from y = 0 mm to 1 mm",
         "symmetry: electric wall at x = 0 mm, solved where x is greater",
