@@ -5,17 +5,20 @@ from __future__ import annotations
 from collections import Counter
 from dataclasses import dataclass, replace
 from functools import cached_property
+from itertools import pairwise
 
 import numpy as np
 
 from nightcap.geometry.arrangement import Arrangement, CutPiece, arrange
-from nightcap.geometry.case import Case, GroundPlane, Material, OpenSpace
-from nightcap.geometry.curves import Arc, Curve, Segment
+from nightcap.geometry.case import Case, GroundPlane, Material
+from nightcap.geometry.curves import Arc, Curve, Floats, Segment
+from nightcap.geometry.domain import straight_edges
 from nightcap.geometry.errors import CaseError
-from nightcap.geometry.layout import Layout, Piece, Region, conductor_side
+from nightcap.geometry.layout import FAR_WALL, MAGNETIC_WALL, FarWall, Layout, Piece, Region, conductor_side
 from nightcap.geometry.layout_checks import find_problems
 from nightcap.geometry.painting import Drawing, paint
 from nightcap.geometry.shapes import chains
+from nightcap.geometry.symmetry import SymmetryLine
 
 OUTSIDE = "outside"
 Content = int | Material | str
@@ -52,10 +55,9 @@ def _faces(drawing: Drawing) -> tuple[Arrangement, list[frozenset[int]]]:
 
 def _content(case: Case, drawing: Drawing, inside: frozenset[int]) -> Content:
     """What a face inside these outlines is filled with: the last one painted."""
-    domain = len(drawing.drawn)
-    if domain not in inside:
+    if not drawing.around <= inside:
         return OUTSIDE
-    top = max(inside - {domain}, default=None)
+    top = max(inside - drawing.around, default=None)
     if top is None:
         return case.background
     drawn = drawing.drawn[top]
@@ -115,9 +117,10 @@ class _Joined:
 
     @cached_property
     def conductors(self) -> tuple[str, ...]:
-        """All names, the boundary's last."""
+        """All names, that of the conductor all around last."""
         names = tuple(conductor.name for conductor in self.case.conductors)
-        return names if isinstance(self.case.boundary, OpenSpace) else (*names, self.case.boundary.name)
+        outer = self.case.outer_conductor
+        return names if outer is None else (*names, outer)
 
     def layout(self) -> Layout:
         """The layout, with the far region where space is open."""
@@ -133,17 +136,19 @@ class _Joined:
         palette = sorted({*materials, self.case.background}, key=lambda m: (m.permittivity, m.loss_tangent, m.name))
         regions = [Region(tuple(walks), palette.index(m)) for walks, m in zip(loops, materials, strict=True)]
         pieces = [Piece(p.curve, p.start, p.end, self._sides(k)) for k, p in enumerate(self.plane.pieces)]
-        if self.drawing.rim:
-            self._add_far_region(pieces, regions, palette.index(self.case.background))
+        points = self.plane.points
+        if self.rim:
+            points = self._add_far_region(pieces, regions, palette.index(self.case.background))
         return Layout(
-            self.plane.points,
+            points,
             tuple(pieces),
             tuple(regions),
             tuple(palette),
             self.conductors,
             self.conductors.index(self.case.reference),
             self.drawing.size,
-            self.drawing.rim,
+            self.rim,
+            self._far_wall(),
         )
 
     def _sides(self, piece: int) -> tuple[int, int]:
@@ -157,26 +162,68 @@ class _Joined:
             return self.region[self.plane.loop_of[half]]
         if isinstance(content, int):
             return conductor_side(content)
-        if self._on_rim(self.plane.pieces[half // 2].curve):
+        return self._beyond(self.plane.pieces[half // 2])
+
+    def _beyond(self, piece: CutPiece) -> int:
+        """What lies across an edge of the domain: a line of symmetry before all else, as it cuts what meets it."""
+        outlines = {number for number, _ in piece.outlines}
+        middle = piece.curve.at(np.array(0.5))
+        if len(self.drawing.drawn) + 1 in outlines:
+            for line in self.case.symmetry:
+                if self._is_at(middle[line.axis], line.at):
+                    return self._edge_side(line)
+        if self._on_rim(piece.curve):
             return max(self.region.values()) + 1  # the far region
+        plane = self.case.boundary
+        if self.drawing.domain.wall and not (isinstance(plane, GroundPlane) and self._is_at(middle[1], plane.at)):
+            return FAR_WALL
+        return self._outer_side
+
+    def _is_at(self, coordinate: float, at: float) -> bool:
+        return bool(abs(coordinate - at) <= 16 * self.drawing.tolerance)
+
+    def _edge_side(self, line: SymmetryLine) -> int:
+        return self._outer_side if line.is_electric else MAGNETIC_WALL
+
+    @property
+    def _outer_side(self) -> int:
         return conductor_side(len(self.conductors) - 1)
 
-    def _on_rim(self, curve: Curve) -> bool:
-        rim = self.drawing.rim
-        return rim is not None and isinstance(curve, Arc) and curve.radius == rim[1] and curve.centre == rim[0]
+    def _far_wall(self) -> FarWall | None:
+        reach = self.drawing.domain.wall
+        if reach is None:
+            return None
+        return FarWall(reach, None if self.case.outer_conductor is None else len(self.conductors) - 1)
 
-    def _add_far_region(self, pieces: list[Piece], regions: list[Region], material: int) -> None:
-        """Closes the rim, counter-clockwise, from the other side: with itself, or along the ground plane."""
+    @property
+    def rim(self) -> tuple[tuple[float, float], float] | None:
+        return self.drawing.domain.rim
+
+    def _on_rim(self, curve: Curve) -> bool:
+        return self.rim is not None and isinstance(curve, Arc) and (curve.centre, curve.radius) == self.rim
+
+    def _add_far_region(self, pieces: list[Piece], regions: list[Region], material: int) -> Floats:
+        """Closes the rim, counter-clockwise, from the other side: with itself, or along the straight edges.
+
+        Two edges meet at infinity, which lies at the rim's centre. Returns the points, with that one if need be.
+        """
+        lines = straight_edges(self.case)
+        first = -np.pi / 2 if [line.axis for line in lines] == [0] else 0.0
         rim = [k for k, piece in enumerate(pieces) if self._on_rim(piece.curve)]
-        rim.sort(key=lambda k: _angle(pieces[k].curve))
+        rim.sort(key=lambda k: np.mod(_angle(pieces[k].curve) - first, 2 * np.pi))
         walk = [k + 1 for k in rim]
-        if isinstance(self.case.boundary, GroundPlane):
-            start, end = pieces[rim[-1]].end, pieces[rim[0]].start
-            ends = [tuple(self.plane.points[point].tolist()) for point in (start, end)]
-            sides = (len(regions), conductor_side(len(self.conductors) - 1))
-            pieces.append(Piece(Segment(ends[0], ends[1]), start, end, sides))
+        points = self.plane.points
+        stops = [pieces[rim[-1]].end, pieces[rim[0]].start] if lines else []
+        if len(lines) == 2:
+            assert self.rim is not None  # noqa: S101 - there is a far region
+            points = np.concatenate([points, [self.rim[0]]])
+            stops.insert(1, len(points) - 1)
+        for line, (start, end) in zip(sorted(lines, key=lambda line: line.axis), pairwise(stops), strict=True):
+            ends = [tuple(points[point].tolist()) for point in (start, end)]
+            pieces.append(Piece(Segment(ends[0], ends[1]), start, end, (len(regions), self._edge_side(line))))
             walk.append(len(pieces))
         regions.append(Region((tuple(walk),), material, far=True))
+        return points
 
 
 def _angle(curve: Curve) -> float:

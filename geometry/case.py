@@ -7,6 +7,8 @@ from dataclasses import dataclass, field
 
 from nightcap.geometry.errors import Problem
 from nightcap.geometry.shapes import Shape
+from nightcap.geometry.symmetry import ELECTRIC_WALL, SymmetryLine
+from nightcap.geometry.twist import Twist
 
 
 @dataclass(frozen=True)
@@ -168,3 +170,19 @@ class Case:
     variant_name: str = ""
     """Such as ``pitch=1.22,wall=0.35``; fit for the name of a folder."""
     source: Source = field(default=Source(), compare=False)
+    symmetry: tuple[SymmetryLine, ...] = ()
+    """At most one per axis. What lies beyond them is the mirror image of what is solved."""
+    twist: Twist | None = None
+
+    @property
+    def outer_conductor(self) -> str | None:
+        """Name of the conductor all around: the shield or plane, with any electric wall; None if there is none."""
+        if not isinstance(self.boundary, OpenSpace):
+            return self.boundary.name
+        return ELECTRIC_WALL if any(line.is_electric for line in self.symmetry) else None
+
+    @property
+    def reference_pieces(self) -> tuple[str, ...]:
+        """All conductors that make up the reference: it comes first, then those tied to it."""
+        tied = (name for group in self.ties if self.reference in group for name in group)
+        return tuple(dict.fromkeys((self.reference, *tied)))

@@ -9,7 +9,7 @@ import numpy as np
 
 from nightcap.geometry.curves import Floats, Ints, direction_and_bend
 from nightcap.geometry.grading import Grading
-from nightcap.geometry.layout import Layout, Piece
+from nightcap.geometry.layout import FAR_WALL, MAGNETIC_WALL, Layout, Piece
 from nightcap.geometry.mesh import Triangulation, ascending
 
 SHRINK = 0.4
@@ -108,8 +108,10 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
     openings = np.diff([*angles, angles[0] + math.tau])
     smooth = len(angles) == 2 and abs(openings[0] - math.pi) < 1e-6
     cusped = bool((openings < 1e-6).any())
-    if smooth or cusped:
+    if smooth or cusped or any(piece.wall == FAR_WALL for _, piece in meeting):
         return None
+    if any(piece.wall for _, piece in meeting):
+        return _fraction_at_mirror(meeting, grading)
     on_conductor = any(min(piece.sides) < 0 for _, piece in meeting)
     if on_conductor and _opens_wide(meeting):
         return grading.corner
@@ -127,6 +129,26 @@ def _opens_wide(meeting: list[tuple[float, Piece]]) -> bool:
         inside = surface[0] < others[0] < surface[1]
         return (between if inside else math.tau - between) > math.pi + 1e-6
     return _dielectric_angle(meeting) > math.pi + 1e-6
+
+
+def _fraction_at_mirror(meeting: list[tuple[float, Piece]], grading: Grading) -> float | None:
+    """The same for a point on a line that no flux passes, where the layout goes on as its mirror image."""
+    wanted = [_fraction_beside(angle, piece, meeting, grading) for angle, piece in meeting if piece.wall]
+    return min((fraction for fraction in wanted if fraction is not None), default=None)
+
+
+def _fraction_beside(angle: float, wall: Piece, meeting: list[tuple[float, Piece]], grading: Grading) -> float | None:
+    """Between one magnetic wall and the next conductor, or wall, around the point: reflection doubles that angle."""
+    inside_is_left = (wall.sides[1] >= MAGNETIC_WALL) == _leaves_along(angle, wall)
+    around = [((other - angle) * (1 if inside_is_left else -1) % math.tau, piece) for other, piece in meeting]
+    around = sorted(((turn, piece) for turn, piece in around if piece is not wall), key=lambda arm: arm[0])
+    end = next((k for k, (_, piece) in enumerate(around) if piece.wall or min(piece.sides) < 0), len(around) - 1)
+    opening, last = around[end]
+    interfaces = [turn for turn, _ in around[:end]]
+    if not last.wall and opening > math.pi / 2 + 1e-6:
+        return grading.corner
+    is_smooth = last.wall and len(interfaces) == 1 and abs(opening - math.pi) < 1e-6 > abs(interfaces[0] - math.pi / 2)
+    return grading.bend if interfaces and not is_smooth else None
 
 
 def _dielectric_angle(meeting: list[tuple[float, Piece]]) -> float:

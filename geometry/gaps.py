@@ -8,9 +8,9 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.spatial import cKDTree
 
-from nightcap.geometry.case import Case, OpenSpace
+from nightcap.geometry.case import Case
 from nightcap.geometry.crossing import CurveTable
-from nightcap.geometry.curves import Curve, Floats, Ints, Point
+from nightcap.geometry.curves import Arc, Curve, Floats, Ints, Point, Segment
 from nightcap.geometry.painting import Drawing
 
 
@@ -47,9 +47,7 @@ class Surfaces:
 def surfaces(case: Case, drawing: Drawing) -> Surfaces:
     """What the conductors of a case, its shield or plane included, show to each other."""
     outlines = [(d.conductor, d.outline) for d in drawing.drawn if d.material is None and d.conductor is not None]
-    if not isinstance(case.boundary, OpenSpace):
-        floor = drawing.domain[:1] if drawing.rim else drawing.domain
-        outlines.append((len(case.conductors), floor))
+    outlines += [(len(case.conductors), surface) for surface in drawing.domain.grounded]
     owner = np.array([conductor for conductor, outline in outlines for _ in outline], dtype=np.int64)
     return Surfaces(tuple(curve for _, outline in outlines for curve in outline), owner)
 
@@ -101,17 +99,27 @@ def _near_pairs(surface: Surfaces, margin: float) -> list[tuple[int, int]]:
 
 
 def _gap(surface: Surfaces, one: int, two: int) -> Gap:
-    """Nearest points of two curves that do not meet: the nearest of samples, then closer and closer around them."""
+    """Nearest points of two curves that do not meet: the best of samples on one, then closer and closer around it."""
     first, second = surface.curves[one], surface.curves[two]
-    samples = np.linspace(0.0, 1.0, 257)
-    distances, nearest = cKDTree(second.at(samples)).query(first.at(samples))
-    k = int(np.argmin(distances))
-    t, u, step = float(samples[k]), float(samples[nearest[k]]), 1 / 256
+    t, step = np.linspace(0.0, 1.0, 257), 1 / 256
     for _ in range(12):
-        around = np.linspace(-step, step, 9)
-        ts, us = np.clip(t + around, 0.0, 1.0), np.clip(u + around, 0.0, 1.0)
-        apart = np.hypot(*(first.at(ts)[:, None] - second.at(us)[None]).transpose(2, 0, 1))
-        i, j = np.unravel_index(int(np.argmin(apart)), apart.shape)
-        t, u, step = float(ts[i]), float(us[j]), step / 4
-    ends = np.array([first.at(np.array(t)), second.at(np.array(u))]).tolist()
+        here, there = first.at(t), nearest_on(second, first.at(t))
+        k = int(np.argmin(np.hypot(*(here - there).T)))
+        t, step = np.clip(t[k] + step * np.linspace(-1.0, 1.0, 17), 0.0, 1.0), step / 8
+    ends = np.array([here[k], there[k]]).tolist()
     return Gap((int(surface.owner[one]), int(surface.owner[two])), (tuple(ends[0]), tuple(ends[1])))
+
+
+def nearest_on(curve: Curve, x: Floats) -> Floats:
+    """(n, 2) the nearest point of a curve to each of some points x (n, 2)."""
+    start, end = np.array(curve.start), np.array(curve.end)
+    if isinstance(curve, Segment):
+        along = np.clip((x - start) @ (end - start) / curve.length**2, 0.0, 1.0)
+        return np.asarray(start + along[:, None] * (end - start))
+    assert isinstance(curve, Arc)  # noqa: S101 - outlines are made of nothing else
+    away = x - np.array(curve.centre)
+    turned = np.sign(curve.sweep) * (np.arctan2(away[:, 1], away[:, 0]) - curve.start_angle)
+    beside = np.mod(turned, 2 * np.pi) <= abs(curve.sweep)
+    on_circle = np.array(curve.centre) + curve.radius * away / np.maximum(np.hypot(*away.T), 1e-300)[:, None]
+    nearer_end = np.where((np.hypot(*(x - start).T) < np.hypot(*(x - end).T))[:, None], start, end)
+    return np.asarray(np.where(beside[:, None], on_circle, nearer_end))

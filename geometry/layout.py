@@ -19,6 +19,12 @@ def conductor_side(conductor: Numbers) -> Numbers:
     return -1 - conductor
 
 
+MAGNETIC_WALL = 1 << 40
+"""The side number of what lies beyond a line of symmetry that no flux passes."""
+FAR_WALL = MAGNETIC_WALL + 1
+"""The side number of what lies beyond the far wall."""
+
+
 @dataclass(frozen=True)
 class Piece:
     """A curve between two points of the layout, meeting others only there."""
@@ -28,7 +34,14 @@ class Piece:
     start: int
     end: int
     sides: tuple[int, int]
-    """What lies left and right: a region number, or ``conductor_side(k)``. On the rim: the near region, the far one."""
+    """What lies left and right: a region number, ``conductor_side(k)``, MAGNETIC_WALL or FAR_WALL.
+    On the rim: the near region, the far one."""
+
+    @property
+    def wall(self) -> int:
+        """MAGNETIC_WALL or FAR_WALL if it lies on one, else 0."""
+        side = max(self.sides)
+        return side if side >= MAGNETIC_WALL else 0
 
 
 @dataclass(frozen=True)
@@ -42,6 +55,23 @@ class Region:
     """Index into Layout.materials."""
     far: bool = False
     """True for the inverted outside of the rim."""
+
+
+@dataclass(frozen=True)
+class FarWall:
+    """Where a domain with slabs ends: a square about the layout, so far away that it hardly matters what is there.
+
+    The bounds hold for unbounded space all the same. Potentials are constant on the wall and continued by that constant
+    to infinity: a continuous function on the whole plane, so Dirichlet's principle gives an upper bound. The flux
+    function is constant along the wall, so no flux passes, and is continued by no flux at all: divergence-free on the
+    whole plane, whatever the materials there, with the same charges; so Thomson's principle gives a lower bound.
+    Neither continuation has any energy. What both lose against the exact field goes as (layout / wall)^2.
+    """
+
+    reach: float
+    """From the middle of the layout to each side of the square, m."""
+    conductor: int | None
+    """The conductor that reaches to infinity, whose potential the wall has; None if the wall's potential floats."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -65,3 +95,5 @@ class Layout:
     """Greatest extent of the drawn shapes, m."""
     rim: tuple[tuple[float, float], float] | None = None
     """Centre and radius of the rim, if space is open."""
+    wall: FarWall | None = None
+    """Instead of a rim, where slabs run to infinity."""

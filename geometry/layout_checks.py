@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, replace
 from itertools import combinations
 
-from nightcap.geometry.arrangement import Arrangement
-from nightcap.geometry.case import Case, GroundPlane, OpenSpace
+import numpy as np
+
+from nightcap.geometry.arrangement import Arrangement, CutPiece
+from nightcap.geometry.case import Case, GroundPlane
 from nightcap.geometry.curves import Point
 from nightcap.geometry.errors import Problem
+from nightcap.geometry.finding import Finding
 from nightcap.geometry.gaps import gaps_below, surfaces
+from nightcap.geometry.outside import what_lies_outside
 from nightcap.geometry.painting import Drawing
 
 SMALLEST_GAP = 1e-6
@@ -24,9 +28,10 @@ def find_problems(
 
     members : for each loop of the arrangement the outlines around the face on its left.
     """
-    found = dict.fromkeys(_overlaps(case, drawing, _faces(plane, members)))
+    found = dict.fromkeys(what_lies_outside(case, drawing))
+    found |= dict.fromkeys(_overlaps(case, drawing, _faces(drawing, plane, members)))
     overlapping = {finding.pair for finding in found}
-    contacts = [finding for finding in _contacts(case, drawing, plane) if finding.pair not in overlapping]
+    contacts = [finding for finding in _contacts(case, drawing, plane, members) if finding.pair not in overlapping]
     found |= dict.fromkeys(contacts)
     touching = overlapping | {finding.pair for finding in contacts}
     found |= dict.fromkeys(finding for finding in _narrow_gaps(case, drawing) if finding.pair not in touching)
@@ -34,34 +39,26 @@ def find_problems(
     return tuple(sorted(problems, key=lambda problem: problem.line or 0))
 
 
-@dataclass(frozen=True)
-class Finding:
-    """A mistake before it is told."""
-
-    pair: tuple[str, str]
-    """Who is in conflict."""
-    key: str
-    """Whom to blame."""
-    text: str
-    place: Point | None = field(default=None, compare=False)
-    """Where, m."""
-
-
 Faces = dict[frozenset[int], Point]
 """The sets of outlines around faces, and a place in one such face or on its edge, m."""
 
 
-def _faces(plane: Arrangement, members: Sequence[frozenset[int]]) -> Faces:
+def _is_kept(drawing: Drawing, inside: frozenset[int]) -> bool:
+    """Whether a face lies on the side of the symmetry lines that is solved."""
+    return drawing.around - {len(drawing.drawn)} <= inside
+
+
+def _faces(drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]) -> Faces:
     faces: Faces = {}
     for loop, inside in sorted(zip(plane.loops, members, strict=True), key=lambda item: sorted(item[1])):
-        if inside not in faces:
+        if inside not in faces and _is_kept(drawing, inside):
             x, y = plane.points[[plane.anchor_of(half) for half in loop]].mean(axis=0).tolist()
             faces[inside] = (x, y)
     return faces
 
 
 def _boundary_name(case: Case) -> str:
-    return "" if isinstance(case.boundary, OpenSpace) else case.boundary.name
+    return case.outer_conductor or ""
 
 
 def _overlaps(case: Case, drawing: Drawing, faces: Faces) -> Iterator[Finding]:
@@ -85,7 +82,7 @@ class _Claim:
     def of(cls, drawing: Drawing, inside: frozenset[int]) -> _Claim:
         domain = len(drawing.drawn)
         conductors, coats = set(), {}
-        for number in sorted(inside - {domain}):  # the innermost coating is painted last
+        for number in sorted(inside - drawing.around):  # the innermost coating is painted last
             drawn = drawing.drawn[number]
             if drawn.conductor is not None and drawn.material is None:
                 conductors.add(drawn.conductor)
@@ -138,14 +135,16 @@ def _coat_sticks_out(case: Case) -> str:
     return f"cuts into the shield '{_boundary_name(case)}'; it may touch it at most"
 
 
-def _contacts(case: Case, drawing: Drawing, plane: Arrangement) -> Iterator[Finding]:
+def _contacts(case: Case, drawing: Drawing, plane: Arrangement, members: Sequence[frozenset[int]]) -> Iterator[Finding]:
     """Conductors that meet in a point or along an edge: a short circuit."""
     names = [c.name for c in case.conductors]
     at: dict[int, set[str]] = {}
-    for piece in plane.pieces:
+    for k, piece in enumerate(plane.pieces):
+        if not any(_is_kept(drawing, members[plane.loop_of[half]]) for half in (2 * k, 2 * k + 1)):
+            continue
         for number, _ in piece.outlines:
-            name = _surface_name(case, drawing, names, number)
-            if name and not (number == len(drawing.drawn) and drawing.rim and piece.curve.curvature):
+            name = _surface_name(case, drawing, names, number, piece)
+            if name:
                 at.setdefault(piece.start, set()).add(name)
                 at.setdefault(piece.end, set()).add(name)
     order = [*names, _boundary_name(case)]
@@ -158,11 +157,21 @@ def _contacts(case: Case, drawing: Drawing, plane: Arrangement) -> Iterator[Find
             yield Finding((a, b), key, text, (x, y))
 
 
-def _surface_name(case: Case, drawing: Drawing, names: list[str], number: int) -> str:
-    if number == len(drawing.drawn):
-        return _boundary_name(case)
+def _surface_name(case: Case, drawing: Drawing, names: list[str], number: int, piece: CutPiece) -> str:
+    """The conductor on whose surface a piece lies as part of an outline, or nothing."""
+    if number in drawing.around:
+        rim = number == len(drawing.drawn) and drawing.domain.rim and piece.curve.curvature
+        return "" if rim or _is_magnetic(case, drawing, number, piece) else _boundary_name(case)
     conductor = drawing.drawn[number].conductor
     return names[conductor] if conductor is not None and _is_conductor(drawing, number) else ""
+
+
+def _is_magnetic(case: Case, drawing: Drawing, number: int, piece: CutPiece) -> bool:
+    if number == len(drawing.drawn):
+        return False
+    middle = piece.curve.at(np.array(0.5))
+    on = [line for line in case.symmetry if abs(middle[line.axis] - line.at) <= 16 * drawing.tolerance]
+    return not any(line.is_electric for line in on)
 
 
 def _narrow_gaps(case: Case, drawing: Drawing) -> Iterator[Finding]:

@@ -71,6 +71,12 @@ class Triangulation:
         return np.append(conductor[self.curve_piece], -1)[self.edge_rank]
 
     @cached_property
+    def edge_wall(self) -> Ints:
+        """(E,) MAGNETIC_WALL or FAR_WALL where an edge lies on one, else 0."""
+        wall = np.array([piece.wall for piece in self.layout.pieces], dtype=np.int64)
+        return np.append(wall[self.curve_piece], 0)[self.edge_rank]
+
+    @cached_property
     def far(self) -> Flags:
         """(T,) True on the far sheet."""
         return np.array([region.far for region in self.layout.regions])[self.region]

@@ -6,12 +6,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from nightcap.geometry.case import Case, GroundPlane, Material, Shield
+from nightcap.geometry.case import Case, Material, Shield
 from nightcap.geometry.curves import Arc, Floats, Point, Segment
-from nightcap.geometry.shapes import Circle, Outline
+from nightcap.geometry.domain import Domain, shielded, unbounded
+from nightcap.geometry.shapes import Outline
+from nightcap.geometry.slab import Slab
 
-RIM = 1.5
-"""Radius of the rim over that of the drawn shapes."""
 TOLERANCE = 1e-9
 """Points and edges this close, relative to the layout's size, are one."""
 
@@ -31,14 +31,15 @@ class Drawn:
 
 @dataclass(frozen=True, eq=False)
 class Drawing:
-    """Outlines in the order of painting, the domain's own last."""
+    """Outlines in the order of painting, then the domain's own, then the window's that symmetry lines leave of it."""
 
     drawn: tuple[Drawn, ...]
-    domain: Outline
-    """The inside of the shield or of the rim; over a ground plane the half disc above it."""
-    size: float
-    """Greatest extent of the drawn shapes, m."""
-    rim: tuple[Point, float] | None
+    domain: Domain
+
+    @property
+    def size(self) -> float:
+        """Greatest extent of the drawn shapes, m."""
+        return self.domain.size
 
     @property
     def tolerance(self) -> float:
@@ -47,13 +48,31 @@ class Drawing:
 
     @property
     def outlines(self) -> list[Outline]:
-        """All outlines; the domain's has the highest number."""
-        return [d.outline for d in self.drawn] + [self.domain]
+        """All outlines; the domain's comes after the drawn ones, the window's last, if there is one."""
+        window = self.domain.window
+        return [d.outline for d in self.drawn] + [self.domain.outline] + ([window] if window else [])
+
+    @property
+    def around(self) -> frozenset[int]:
+        """Numbers of the outlines that what is solved lies inside of: the domain's and the window's."""
+        return frozenset(range(len(self.drawn), len(self.outlines)))
 
 
 def paint(case: Case) -> Drawing:
     """Lists the outlines: dielectrics, coatings from the outside in, conductors."""
-    drawn = [Drawn(d.shape.outline(), f"dielectrics.{d.name}", None, d.material) for d in case.dielectrics]
+    conductors = _painted_conductors(case)
+    bodies = [() if isinstance(d.shape, Slab) else d.shape.outline() for d in case.dielectrics]
+    domain = _domain(case, [*filter(None, bodies), *(d.outline for d in conductors)])
+    dielectrics = []
+    for d, body in zip(case.dielectrics, bodies, strict=True):
+        outline = domain.filled_by(d.shape) if isinstance(d.shape, Slab) else body
+        dielectrics.append(Drawn(outline, f"dielectrics.{d.name}", None, d.material))
+    return Drawing((*dielectrics, *conductors), domain)
+
+
+def _painted_conductors(case: Case) -> list[Drawn]:
+    """Coatings from the outside in, one conductor after the other; then the conductors."""
+    drawn: list[Drawn] = []
     for number, conductor in enumerate(case.conductors):
         thickness = 0.0
         coats = []
@@ -62,22 +81,14 @@ def paint(case: Case) -> Drawing:
             outline = conductor.shape.grown(thickness).outline()
             coats.append(Drawn(outline, f"conductors.{conductor.name}.coatings[{k}]", number, coating.material))
         drawn += reversed(coats)
-    drawn += [Drawn(c.shape.outline(), f"conductors.{c.name}", k) for k, c in enumerate(case.conductors)]
+    return drawn + [Drawn(c.shape.outline(), f"conductors.{c.name}", k) for k, c in enumerate(case.conductors)]
+
+
+def _domain(case: Case, outlines: list[Outline]) -> Domain:
     if isinstance(case.boundary, Shield):
-        domain = case.boundary.shape.outline()
-        low, high = box([*(d.outline for d in drawn), domain])
-        return Drawing(tuple(drawn), domain, float((high - low).max()), None)
-    low, high = box([d.outline for d in drawn])
-    middle = (low + high) / 2
-    if isinstance(case.boundary, GroundPlane):
-        middle[1] = case.boundary.at
-    centre = (float(middle[0]), float(middle[1]))
-    radius = RIM * max(_reach(d.outline, middle) for d in drawn)
-    whole = Circle(centre, radius).outline()
-    if isinstance(case.boundary, GroundPlane):
-        floor = Segment((centre[0] - radius, centre[1]), (centre[0] + radius, centre[1]))
-        return Drawing(tuple(drawn), (floor, *whole[:2]), float((high - low).max()), (centre, radius))
-    return Drawing(tuple(drawn), whole, float((high - low).max()), (centre, radius))
+        shield = case.boundary.shape.outline()
+        return shielded(case, shield, *box([*outlines, shield]))
+    return unbounded(case, *box(outlines), reach=lambda middle: max(_reach(o, middle) for o in outlines))
 
 
 def box(outlines: list[Outline]) -> tuple[Floats, Floats]:

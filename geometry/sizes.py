@@ -17,6 +17,8 @@ GROWTH = 0.5
 """How fast edges may grow with the distance from a corner."""
 GAP = 1.3
 """An edge beside a gap g along a curve of radius r is at most GAP sqrt((r + g) g)."""
+SPREAD = 0.5
+"""And, where walls let fields spread far along straight edges, at most SPREAD (r + g)."""
 
 
 def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
@@ -62,6 +64,7 @@ class _Sizes:
         self.near = _close_pairs(layout, self.coarsest)
         self.floor = grading.contact * np.where(np.isinf(self.radius), layout.size, self.radius)
         self.arcs = np.array([_arc_row(piece) for piece in pieces])
+        self.spread = SPREAD if any(piece.wall for piece in pieces) else np.inf
         self.ends = np.array([(piece.curve.start, piece.curve.end) for piece in pieces])
 
     def points(self, owner: Ints, t: Floats) -> Floats:
@@ -83,7 +86,7 @@ class _Sizes:
         r = np.minimum(self.radius[owner[row]], self.radius[other])
         law = np.full(len(row), np.inf)
         bent = np.isfinite(r)
-        law[bent] = GAP * np.sqrt((r[bent] + gap[bent]) * gap[bent])
+        law[bent] = np.minimum(GAP * np.sqrt((r[bent] + gap[bent]) * gap[bent]), self.spread * (r[bent] + gap[bent]))
         np.minimum.at(size, row, np.maximum(law, np.minimum(self.floor[owner[row]], self.floor[other])))
         return size
 

@@ -28,7 +28,7 @@ OPTIONS = {
 GROWTH = 0.8
 """How fast triangles grow with the distance from the nearest curve."""
 FARTHEST = 10.0
-"""No point is farther from a curve than this, in sizes of the layout."""
+"""No point is farther from a curve than this, in sizes of the layout, unless there is a far wall."""
 
 
 @contextmanager
@@ -102,18 +102,19 @@ def _describe(gmsh: ModuleType, layout: Layout, points: Floats, along: list[Ints
             geo.addCurveLoop([tag for piece in walk for tag in _walked(lines, piece)], loop)
         geo.addPlaneSurface(list(range(first, loop + 1)), k)
     geo.synchronize()
-    _grow_from_curves(gmsh, tag, len(layout.regions))
+    farthest = FARTHEST if layout.wall is None else 2 * layout.wall.reach / layout.size
+    _grow_from_curves(gmsh, tag, len(layout.regions), farthest)
 
 
-def _grow_from_curves(gmsh: ModuleType, lines: int, surfaces: int) -> None:
-    """Triangles as large as the nearest edge, plus so much of the distance to it."""
+def _grow_from_curves(gmsh: ModuleType, lines: int, surfaces: int, farthest: float) -> None:
+    """Triangles as large as the nearest edge, plus so much of the distance to it, which is at most ``farthest``."""
     field = gmsh.model.mesh.field
     tag = field.add("Extend")
     field.setNumbers(tag, "CurvesList", list(range(1, lines + 1)))
     field.setNumbers(tag, "SurfacesList", list(range(1, surfaces + 1)))
     field.setNumber(tag, "Power", 1.0)
-    field.setNumber(tag, "DistMax", FARTHEST)
-    field.setNumber(tag, "SizeMax", GROWTH * FARTHEST)
+    field.setNumber(tag, "DistMax", farthest)
+    field.setNumber(tag, "SizeMax", GROWTH * farthest)
     field.setAsBackgroundMesh(tag)
 
 

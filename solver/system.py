@@ -17,6 +17,7 @@ from nightcap.solver.element import ElementTriLagrange, skeleton_size
 from nightcap.solver.fields import Fields
 from nightcap.solver.stiffness import Stiffness, edge_pairing, stiffness
 from nightcap.solver.stopwatch import Stopwatch
+from nightcap.solver.walls import held_fluxes, potential_of_far_wall, unknowns_on, with_one_far_potential
 
 ALLOWANCE = 1e-12
 """What rounding may do to a bound, relative; both are widened by it."""
@@ -32,9 +33,7 @@ def solve_fields(mesh: Mesh, order: int, tolerance: float, watch: Stopwatch) -> 
     above, below = _weighted(mesh, local)
     potential = _potentials(mesh, order, dofs, above, watch)
     upper = _energy(above, potential)
-    flux, P = _fluxes(mesh, order, dofs, below, watch)
-    lower = np.linalg.inv(P)
-    flux = flux @ lower
+    flux, lower = _fluxes(mesh, order, dofs, below, watch)
     pairing = edge_pairing(order) * (mesh.orientation * np.where(mesh.far, -1.0, 1.0))[:, None, None]
     mixed = np.einsum("tbn,tbn->tn", potential, pairing @ flux)
     energy = _per_triangle(above, potential) + _per_triangle(below, flux)
@@ -74,30 +73,26 @@ def _per_triangle(K: Floats, u: Floats) -> Floats:
 
 def _energy(K: Floats, u: Floats) -> Floats:
     """(N, N) the sum of u' K u over all triangles."""
+    u = u - u[:, :1]  # no triangle has any energy of constants: without them less is lost to rounding
     n = u.shape[2]
     return u.reshape(-1, n).T @ (K @ u).reshape(-1, n)
 
 
 def _fixed_potentials(mesh: Mesh, order: int, dofs: Ints) -> Ints:
     """(M,) the conductor that fixes each unknown of the potential, or -1."""
-    conductor = np.full(int(dofs.max()) + 1, -1, dtype=np.int64)
-    p = order - 1
-    for local, (a, b) in enumerate(polynomials.EDGES):
-        on = mesh.edge_conductor[mesh.triangle_edges[:, local]]
-        rows = np.flatnonzero(on >= 0)
-        columns = [a, b, *range(3 + local * p, 3 + (local + 1) * p)]
-        conductor[dofs[rows][:, columns]] = on[rows, None]
+    conductor = unknowns_on(mesh, order, dofs, mesh.edge_conductor, -1)
     engulfed = np.flatnonzero(mesh.engulfed_by >= 0)
     conductor[dofs[engulfed]] = mesh.engulfed_by[engulfed, None]
-    return conductor
+    return potential_of_far_wall(mesh, order, dofs, conductor)
 
 
 def _potentials(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch) -> Floats:
     """(T, b, N) the potentials of least energy."""
     conductor = _fixed_potentials(mesh, order, dofs)
+    dofs = with_one_far_potential(mesh, order, dofs)
     others = [k for k in range(len(mesh.layout.conductors)) if k != mesh.layout.reference]
     values = (conductor[:, None] == np.array(others)).astype(float)
-    free = conductor < 0
+    free = (conductor < 0) & (np.bincount(dofs.ravel(), minlength=len(conductor)) > 0)
     number = np.where(free, np.cumsum(free) - 1, -1)
     with watch.on("assembly"):
         load = _scattered(dofs, -(K @ values[dofs]), len(conductor))
@@ -108,18 +103,24 @@ def _potentials(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch)
 
 
 def _fluxes(mesh: Mesh, order: int, dofs: Ints, K: Floats, watch: Stopwatch) -> tuple[Floats, Floats]:
-    """(T, b, N) flux functions of unit charges, and the matrix P (N, N) of their energies: an upper bound of 1/C."""
+    """(T, b, N) flux functions of unit potentials, and a lower bound (N, N) of C.
+
+    With energies S of unit jumps t over the cuts and charges q = Q t, the least energy of given charges is that of
+    t = S^-1 Q' (Q S^-1 Q')^-1 q: so P = (Q S^-1 Q')^-1 is an upper bound of C^-1, and Q S^-1 Q' a lower one of C.
+    """
     with watch.on("assembly"):
         tree = cut_tree(mesh)
         jumps = _jumps(tree, order, len(dofs))
-        size = int(dofs.max()) + 1
-        load = _scattered(dofs, -(K @ jumps), size)
-        number = np.arange(size) - 1  # the first unknown is held at zero
-        matrix = _assembled(number[dofs], K, size - 1)
-    values = np.zeros((size, len(tree.cuts)))
-    values[1:] = _solved(matrix, load[1:], watch)
-    flux = (values[dofs] + jumps) @ tree.behind
-    return flux, _energy(K, flux)
+        free = ~held_fluxes(mesh, order, dofs)
+        load = _scattered(dofs, -(K @ jumps), len(free))
+        number = np.where(free, np.cumsum(free) - 1, -1)
+        matrix = _assembled(number[dofs], K, int(free.sum()))
+    values = np.zeros((len(free), len(tree.cuts)))
+    if matrix.shape[0]:
+        values[free] = _solved(matrix, load[free], watch)
+    flux = values[dofs] + jumps
+    jumps_of_unit_potentials = np.linalg.solve(_energy(K, flux), tree.charges.T)
+    return flux @ jumps_of_unit_potentials, tree.charges @ jumps_of_unit_potentials
 
 
 def _jumps(tree: CutTree, order: int, triangles: int) -> Floats:
@@ -128,7 +129,7 @@ def _jumps(tree: CutTree, order: int, triangles: int) -> Floats:
     hats = np.stack([1 - x - y, x, y])
     jumps = np.zeros((triangles, hats.shape[1], len(tree.cuts)))
     for column, cut in enumerate(tree.cuts):
-        np.add.at(jumps[:, :, column], cut.triangle, hats[cut.corner])
+        np.add.at(jumps[:, :, column], cut.triangle, cut.value[:, None] * hats[cut.corner])
     return jumps
 
 

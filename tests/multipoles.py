@@ -70,7 +70,57 @@ class InOpenSpace:
     """Unbounded space, no net charge; the last wire is the reference."""
 
 
-Surroundings = InShield | OverPlane | InOpenSpace
+@dataclass(frozen=True)
+class OverHalfSpace:
+    """Above a dielectric that fills everything below y = 0; no net charge, as in open space."""
+
+    permittivity: float
+    neutral = True
+
+    def images(self, background: float) -> list[tuple[float, float]]:
+        """(factor, shift): a pole at z has images of that factor at conj(z) + i shift.
+
+        Source: method of images, Smythe, Static and Dynamic Electricity (from memory).
+        """
+        return [((background - self.permittivity) / (background + self.permittivity), 0.0)]
+
+
+@dataclass(frozen=True)
+class OverSlab:
+    """Above a dielectric slab from y = -thickness to 0, with the background again below it; no net charge."""
+
+    thickness: float
+    permittivity: float
+    neutral = True
+
+    def images(self, background: float) -> list[tuple[float, float]]:
+        """A wave e^(-ky) is sent back K (1 - e) / (1 - K^2 e)-fold, e = e^(-2kt): a geometric series of images."""
+        K = (background - self.permittivity) / (background + self.permittivity)
+        return [(K, 0.0), *_series(-K * (1 - K**2), K**2, self.thickness)]
+
+
+@dataclass(frozen=True)
+class OverGroundedSlab:
+    """Above a dielectric slab from y = -thickness to 0 that lies on a grounded plane."""
+
+    thickness: float
+    permittivity: float
+    neutral = False
+
+    def images(self, background: float) -> list[tuple[float, float]]:
+        """A wave e^(-ky) is sent back (K - e) / (1 - K e)-fold, e = e^(-2kt)."""
+        K = (background - self.permittivity) / (background + self.permittivity)
+        return [(K, 0.0), *_series(-(1 - K**2), K, self.thickness)]
+
+
+def _series(first: float, ratio: float, thickness: float) -> list[tuple[float, float]]:
+    """Images -2 t, -4 t, ... below the first, until what is left of the factors no longer counts."""
+    terms = 1 if ratio == 0 else int(np.ceil(np.log(1e-17) / np.log(abs(ratio))))
+    return [(first * ratio**n, -2 * thickness * (n + 1)) for n in range(terms)]
+
+
+Layered = OverHalfSpace | OverSlab | OverGroundedSlab
+Surroundings = InShield | OverPlane | InOpenSpace | Layered
 
 
 def capacitance(
@@ -94,14 +144,14 @@ def _capacitance(wires: tuple[Wire, ...], around: Surroundings, background: floa
         answer = here.answers(count, background)
         rows = slice(j * step, (j + 1) * step)
         for k, source in enumerate(wires):
-            arriving = _arriving(source, here, around, count, j == k)
+            arriving = _arriving(source, here, around, count, j == k, background)
             back = np.r_[answer, -answer]  # the conjugate, times the answer
             A[rows, k * step : (k + 1) * step] = np.r_[-back[:, None] * arriving[:-1], arriving[-1:]]
         A[rows, rows][np.arange(step - 1), np.arange(step - 1)] += 1.0
         A[j * step + step - 1, j * step + step - 1] += background * here.series_drop - np.log(here.outside)
     volts = np.zeros((size * step, size))
     volts[step - 1 :: step] = np.eye(size)
-    if isinstance(around, InOpenSpace):
+    if isinstance(around, InOpenSpace) or (isinstance(around, Layered) and around.neutral):
         return _neutral(A, volts, step, background)
     charges = np.linalg.solve(A, volts)[step - 1 :: step]
     return np.asarray(2 * np.pi * background * charges)
@@ -116,7 +166,7 @@ def _neutral(A: Real, volts: Real, step: int, background: float) -> Real:
     return np.asarray(2 * np.pi * background * solved[step - 1 : -1 : step][:-1, :-1])
 
 
-def _arriving(source: Wire, here: Wire, around: Surroundings, count: int, same: bool) -> Real:
+def _arriving(source: Wire, here: Wire, around: Surroundings, count: int, same: bool, background: float) -> Real:
     """(2 count + 1, 2 count + 1) from what leaves one wire to what arrives at another: harmonics, then constant."""
     straight = np.zeros((count + 1, count + 1), dtype=complex)
     mirrored = np.zeros_like(straight)
@@ -124,6 +174,9 @@ def _arriving(source: Wire, here: Wire, around: Surroundings, count: int, same: 
         straight = _from_pole(source.centre, source.outside, here, count)
     if isinstance(around, OverPlane):
         mirrored = -_from_pole(source.centre.conjugate(), source.outside, here, count)
+    if isinstance(around, Layered):
+        for factor, shift in around.images(background):
+            mirrored += factor * _from_pole(source.centre.conjugate() + 1j * shift, source.outside, here, count)
     if isinstance(around, InShield):
         mirrored = _by_way_of_shield(source, here, around.radius, count)
     return _as_real(straight, mirrored)

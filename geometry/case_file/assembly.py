@@ -3,20 +3,10 @@
 from __future__ import annotations
 
 from collections import Counter
+from dataclasses import replace
 from typing import Any
 
-from nightcap.geometry.case import (
-    Boundary,
-    Case,
-    Conductor,
-    Dielectric,
-    Expectation,
-    GroundPlane,
-    Limits,
-    Material,
-    OpenSpace,
-    Shield,
-)
+from nightcap.geometry.case import Case, Conductor, Dielectric, Expectation, Limits, Material
 from nightcap.geometry.case_file.boundaries import read_boundary
 from nightcap.geometry.case_file.consistency import check_case, check_name
 from nightcap.geometry.case_file.constructions import read_constructions
@@ -33,6 +23,8 @@ from nightcap.geometry.case_file.schema import (
     checked,
 )
 from nightcap.geometry.case_file.shapes import shaped
+from nightcap.geometry.case_file.symmetry import read_symmetry
+from nightcap.geometry.case_file.twist import read_twist
 from nightcap.geometry.case_file.values import Values
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
@@ -47,6 +39,8 @@ def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Value
     boundary = read_boundary(tree["boundary"], "boundary", problems, context) if "boundary" in tree else None
     limits = _limits(tree.get("limits"), problems, context)
     expect = _expect(tree.get("expect"), problems, context)
+    symmetry = read_symmetry(tree.get("symmetry"), problems, context)
+    twist = read_twist(tree.get("twist"), conductors, problems, context)
     problems.raise_any()
     if entry is None or boundary is None:  # what is missing was noted, so this is not reached
         raise AssertionError("an entry is missing without having been noted")
@@ -55,15 +49,19 @@ def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Value
         title=entry.title or name,
         conductors=conductors,
         boundary=boundary,
-        reference=entry.reference or _default_reference(boundary, conductors),
+        reference=entry.reference[0] if entry.reference else "",
         dielectrics=dielectrics,
         background=background,
-        ties=entry.tie,
+        ties=entry.tie if len(entry.reference) < 2 else (*entry.tie, entry.reference),
         accuracy=entry.accuracy,
         limits=limits,
         expect=expect,
         source=problems.source,
+        symmetry=symmetry,
+        twist=twist,
     )
+    if not case.reference:
+        case = replace(case, reference=case.outer_conductor or conductors[-1].name)
     check_case(case, problems)
     problems.raise_any()
     return case
@@ -73,13 +71,6 @@ def file_unit(tree: dict[str, Tree]) -> float:
     """The unit of bare numbers, m."""
     unit = tree.get("units")
     return LENGTHS.get(unit, 1e-3) if isinstance(unit, str) else 1e-3
-
-
-def _default_reference(boundary: Boundary, conductors: tuple[Conductor, ...]) -> str:
-    if isinstance(boundary, Shield | GroundPlane):
-        return boundary.name
-    assert isinstance(boundary, OpenSpace)  # noqa: S101 - there is no other kind
-    return conductors[-1].name
 
 
 def _entries(tree: Tree, path: str, problems: Problems) -> dict[str, Tree]:

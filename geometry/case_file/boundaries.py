@@ -8,11 +8,11 @@ from pydantic import Field
 
 from nightcap.geometry.case import Boundary, GroundPlane, OpenSpace, Shield
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
-from nightcap.geometry.case_file.quantities import Length
+from nightcap.geometry.case_file.quantities import Length, PointOf, PositiveLength
 from nightcap.geometry.case_file.schema import Entry, Text, checked
 from nightcap.geometry.case_file.shapes import shaped
 from nightcap.geometry.case_file.yaml_tree import Tree
-from nightcap.geometry.shapes import chains
+from nightcap.geometry.shapes import Rectangle, chains
 
 
 class ShieldKeys(Entry):
@@ -20,6 +20,16 @@ class ShieldKeys(Entry):
 
     kind: Text
     name: Text = "shield"
+
+
+class BoxKeys(Entry):
+    """A rectangular shield."""
+
+    kind: Text
+    name: Text = "box"
+    width: PositiveLength = Field(description="Of its inside.")
+    height: PositiveLength = Field(description="Of its inside.")
+    at: PointOf = Field((0.0, 0.0), description="Centre.")
 
 
 class OpenKeys(Entry):
@@ -44,6 +54,11 @@ def _shield(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) 
     return Shield(read[1], read[0].name) if read else None
 
 
+def _box(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
+    entry = checked(BoxKeys, tree, path, problems, context)
+    return Shield(Rectangle(entry.at, entry.width, entry.height), entry.name) if entry else None
+
+
 def _open(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
     return OpenSpace() if checked(OpenKeys, tree, path, problems, context) else None
 
@@ -53,7 +68,7 @@ def _ground_plane(tree: Tree, path: str, problems: Problems, context: dict[str, 
     return GroundPlane(entry.at, entry.name) if entry else None
 
 
-BOUNDARIES = {"shield": _shield, "open": _open, "ground_plane": _ground_plane}
+BOUNDARIES = {"shield": _shield, "box": _box, "open": _open, "ground_plane": _ground_plane}
 """A new kind is one more reader and one more line here."""
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 
-from nightcap.geometry.case import Case, Expectation, OpenSpace
+from nightcap.geometry.case import Case, Expectation, GroundPlane, OpenSpace
 from nightcap.geometry.case_file.problems import Problems, one_of, under
 
 NAME = re.compile(r"[^\W_][\w.+-]{0,63}")
@@ -20,13 +20,19 @@ def check_name(name: str, path: str, problems: Problems) -> None:
 def check_case(case: Case, problems: Problems) -> None:
     """Notes every inconsistency of a case."""
     names = [conductor.name for conductor in case.conductors]
+    outer = case.outer_conductor
     if not isinstance(case.boundary, OpenSpace):
         check_name(case.boundary.name, "boundary.name", problems)
-        if case.boundary.name in names:
-            problems.add("boundary.name", f"'{case.boundary.name}' is the name of a conductor already")
-        names.append(case.boundary.name)
+    if outer is not None:
+        if outer in names:
+            key = f"conductors.{outer}" if isinstance(case.boundary, OpenSpace) else "boundary.name"
+            problems.add(
+                key, f"'{outer}' is the name of {'the wall' if key != 'boundary.name' else 'a conductor'} already"
+            )
+        names.append(outer)
     elif len(names) < 2:
         problems.add("conductors", "in open space there must be at least two: the charge of one returns to another")
+    _check_lines(case, problems)
     if case.reference not in names:
         problems.add("reference", one_of(case.reference, names))
         return
@@ -40,10 +46,18 @@ def check_case(case: Case, problems: Problems) -> None:
             _check_expectation(case.expect, remaining, problems)
 
 
+def _check_lines(case: Case, problems: Problems) -> None:
+    for k, line in enumerate(case.symmetry):
+        if line.axis == 1 and isinstance(case.boundary, GroundPlane):
+            problems.add(under("symmetry", k), "the ground plane ends the layout in y already; allowed here: x")
+
+
 def _check_ties(case: Case, names: list[str], problems: Problems) -> None:
     group_of: dict[str, int] = {}
     for k, group in enumerate(case.ties):
         path = under("tie", k)
+        if path not in problems.source.lines and case.reference in group:
+            path = "reference"  # several pieces of it are a group of their own
         for name in group:
             if name not in names:
                 problems.add(path, one_of(name, names))

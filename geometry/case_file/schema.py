@@ -35,6 +35,11 @@ class Entry(BaseModel):
 EntryType = TypeVar("EntryType", bound=Entry)
 
 
+def words_of(model: type[Entry]) -> list[str]:
+    """The keys of an entry as they are written: some are no Python names."""
+    return [field.alias or name for name, field in model.model_fields.items()]
+
+
 def _text(value: object) -> str:
     if not isinstance(value, str):
         raise ValueError("must be text; put it in quotes")
@@ -84,6 +89,16 @@ def _matrix(value: object, info: ValidationInfo) -> tuple[tuple[float, ...], ...
     if any(len(row) != len(value) for row in value):
         raise ValueError("must have as many columns as rows")
     return tuple(tuple(number(x, {}, 1.0, "3.2", values_of(info)) for x in row) for row in value)
+
+
+def _reference(value: object) -> tuple[str, ...]:
+    if not isinstance(value, list):
+        return (_text(value),)
+    if not value or any(not isinstance(name, str) for name in value):
+        raise ValueError("must be the name of a conductor, or a list of names, e.g. [screen, drain]")
+    if len(set(value)) < len(value):
+        raise ValueError("names a conductor twice")
+    return tuple(value)
 
 
 Text = Annotated[str, BeforeValidator(_text)]
@@ -149,8 +164,12 @@ class CaseEntry(Entry):
     dielectrics: Any = Field(None, description="Name to shape and material; later ones cover earlier ones.")
     constructions: Any = Field(None, description="Name to pair, ribbon, board ...: what cables are made of.")
     background: Any = Field(None, description="Material of all that is not drawn.")
-    boundary: Any = Field(description="Shield, open space or ground plane.")
-    reference: Text | None = Field(None, description="The conductor that the matrix is relative to.")
+    boundary: Any = Field(description="Shield, box, open space or ground plane.")
+    reference: Annotated[tuple[str, ...], BeforeValidator(_reference)] = Field(
+        (), description="The conductor that the matrix is relative to, or a list of them that are one."
+    )
+    symmetry: Any = Field(None, description="Lines of symmetry; what lies on the greater side of each is solved.")
+    twist: Any = Field(None, description="Lay length and pitch circle of twisted cores.")
     tie: Annotated[tuple[tuple[str, ...], ...], BeforeValidator(_names)] = ()
     limits: Any = None
     expect: Any = None
@@ -161,7 +180,7 @@ def checked(
 ) -> EntryType | None:
     """An entry of a model, or None after noting every mistake in it."""
     if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the keys {listed(_words(model))}")
+        problems.add(path, f"must be a mapping with the keys {listed(words_of(model))}")
         return None
     try:
         return model.model_validate(tree, context=dict(context))
@@ -177,7 +196,7 @@ def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -
         place = under(place, key)
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
-        known = _words(model)
+        known = words_of(model)
         problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
     elif detail["type"] == FOLLOWS:
         return
@@ -187,8 +206,3 @@ def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -
         problems.add(place, str(detail["ctx"]["error"]))
     else:
         problems.add(place, str(detail["msg"]))
-
-
-def _words(model: type[Entry]) -> list[str]:
-    """The keys of a model as they are written."""
-    return [info.alias or name for name, info in model.model_fields.items()]

@@ -12,6 +12,9 @@ from nightcap.geometry.curves import Point
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.motion import Moved
 from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector
+from nightcap.geometry.slab import Slab
+from nightcap.geometry.symmetry import SymmetryLine
+from nightcap.geometry.twist import Twist
 from nightcap.lengths import length_text
 
 FIRST_VARIANTS = 4
@@ -32,8 +35,11 @@ def description(case: Case, layout: Layout) -> Iterator[str]:
         yield f"    {dielectric.name}: {describe(dielectric.shape)}; {_material(dielectric.material)}"
     yield f"  background: {_material(case.background)}"
     yield f"  boundary: {describe(case.boundary)}"
-    yield f"  reference: {case.reference}"
-    yield from (f"  tied together: {', '.join(group)}" for group in case.ties)
+    yield from (f"  {_line(line)}" for line in case.symmetry)
+    yield f"  reference: {', '.join(case.reference_pieces)}"
+    yield from (f"  tied together: {', '.join(group)}" for group in case.ties if case.reference not in group)
+    if case.twist:
+        yield f"  twist: {_twist(case.twist)}"
     yield f"  accuracy: {case.accuracy:.3g}; limits: {_limits(case.limits)}"
     if case.expect:
         exact = ", exact" if case.expect.exact else ""
@@ -132,6 +138,15 @@ def _(polygon: Polygon) -> str:
 
 
 @describe.register
+def _(slab: Slab) -> str:
+    if math.isinf(slab.low):
+        return f"half space below y = {length_text(slab.high)}"
+    if math.isinf(slab.high):
+        return f"half space above y = {length_text(slab.low)}"
+    return f"slab without end, from y = {length_text(slab.low)} to {length_text(slab.high)}"
+
+
+@describe.register
 def _(shield: Shield) -> str:
     return f"shield {shield.name!r}, inside: {describe(shield.shape)}"
 
@@ -144,6 +159,19 @@ def _(_space: OpenSpace) -> str:
 @describe.register
 def _(plane: GroundPlane) -> str:
     return f"ground plane {plane.name!r} at y = {length_text(plane.at)}"
+
+
+def _line(line: SymmetryLine) -> str:
+    """Such as: symmetry: magnetic wall at x = 0 mm, solved where x is greater."""
+    axis, wall = "xy"[line.axis], "electric" if line.is_electric else "magnetic"
+    return f"symmetry: {wall} wall at {axis} = {length_text(line.at)}, solved where {axis} is greater"
+
+
+def _twist(twist: Twist) -> str:
+    return (
+        f"lay length {length_text(twist.lay_length)}, pitch circle {length_text(twist.pitch_diameter)};"
+        f" {twist.length_factor:.6f} m of core per metre of cable"
+    )
 
 
 def _coating(coating: Coating) -> str:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
@@ -12,6 +12,7 @@ from nightcap.comparison import Comparison, compare
 from nightcap.geometry.case import Case
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import Problem
+from nightcap.geometry.twist import LEFT_OUT, Twist
 
 if TYPE_CHECKING:
     from nightcap.outputs.drawing import Drawing
@@ -95,6 +96,11 @@ class Result:
     problems: tuple[Problem, ...] = ()
     """Why a case failed."""
     provenance: Mapping[str, Any] = field(default_factory=dict)
+    notes: tuple[str, ...] = ()
+    """What a reader must know to use the numbers."""
+    reference_pieces: tuple[str, ...] = ()
+    """The conductors that make up the reference, if they are several."""
+    twist: Twist | None = None
     drawing: Drawing | None = None
     """What the picture is drawn from; stays in the process that solved the case."""
     variant: Mapping[str, float] = field(default_factory=dict)
@@ -111,6 +117,13 @@ class Result:
     def is_good(self) -> bool:
         """Met, and in agreement with what the case expects."""
         return self.status == MET and (self.comparison is None or self.comparison.agrees)
+
+    @property
+    def per_cable_length(self) -> Capacitance | None:
+        """The matrix per metre of twisted cable, which holds more than a metre of each core; else None."""
+        if self.capacitance is None or self.twist is None:
+            return None
+        return scaled(self.capacitance, self.twist.length_factor)
 
     @property
     def mutual(self) -> MutualCapacitance | None:
@@ -151,8 +164,31 @@ def solved_result(name: str, case: Case, solution: Any, drawing: Drawing | None)
         seconds=_seconds(solution.seconds),
         comparison=compare(case.expect, capacitance) if case.expect else None,
         warnings=tuple(solution.warnings),
+        notes=tuple(notes(case)),
+        reference_pieces=case.reference_pieces if len(case.reference_pieces) > 1 else (),
+        twist=case.twist,
         drawing=drawing,
     )
+
+
+def scaled(C: Capacitance, factor: float) -> Capacitance:  # noqa: N803 - the letter of the formula
+    """The matrix and its bounds times a positive factor."""
+    matrices = (C.value, C.lower, C.upper, C.half_width)
+    return Capacitance(C.conductors, *(factor * matrix for matrix in matrices))
+
+
+def notes(case: Case) -> Iterator[str]:
+    """What a reader must know of how the case was cut."""
+    if case.symmetry:
+        parts = " and ".join(f"{'xy'[line.axis]} >= {line.at:g} m" for line in case.symmetry)
+        walls = ", ".join(map(str, case.symmetry))
+        yield (
+            f"the matrix is that of the part with {parts} ({walls}): charges on this part alone. A conductor that a"
+            " magnetic wall cuts carries twice as much with its mirror image; one beside a wall stands for itself and"
+            " its image at equal (magnetic) or opposite (electric) potential"
+        )
+    if case.twist:
+        yield f"twist: {LEFT_OUT}"
 
 
 def failed_result(name: str, problems: tuple[Problem, ...], case: Case | None = None) -> Result:

@@ -11,6 +11,7 @@ import numpy as np
 from nightcap.digits import bracketed, grouped
 from nightcap.geometry.curves import Floats
 from nightcap.jobs import Job
+from nightcap.lengths import length_text
 from nightcap.result import FAILED, MET, Capacitance, MutualCapacitance, Result
 
 WIDTH = 80
@@ -29,11 +30,14 @@ def result_lines(result: Result) -> Iterator[str]:
     if result.status != FAILED and C is not None and mutual is not None:
         yield from _wrapped(_how_solved(result))
         if len(C.conductors) <= WHOLE_MATRIX:
-            yield from _whole_matrices(C, mutual, result.reference)
+            yield from _whole_matrices(C, mutual, _reference(result))
         else:
-            yield from _each_conductor(C, mutual, result.reference)
+            yield from _each_conductor(C, mutual, _reference(result))
+        yield from _twist(result)
     if result.comparison is not None:
         yield from _wrapped(str(result.comparison))
+    for note in result.notes:
+        yield from _wrapped(f"note: {note}")
     for warning in result.warnings:
         yield from _wrapped(f"warning: {warning}")
 
@@ -97,9 +101,13 @@ def _as_expected(result: Result) -> bool:
     return result.comparison is None or result.comparison.agrees
 
 
+def _reference(result: Result) -> str | None:
+    return ", ".join(result.reference_pieces) or result.reference
+
+
 def _how_solved(result: Result) -> str:
     parts = [
-        f"reference {result.reference}",
+        f"reference {_reference(result)}",
         f"accuracy {_small(result.requested)} requested, {_small(result.reached)} reached",
     ]
     if result.mesh:
@@ -116,6 +124,20 @@ def _whole_matrices(C: Capacitance, mutual: MutualCapacitance, reference: str | 
     yield from _matrix(C.conductors, _entries(C.value, C.half_width))
     yield f"{MARGIN}Mutual capacitance, pF/m; on the diagonal to the reference, {reference}"
     yield from _matrix(C.conductors, _entries(mutual.value, mutual.half_width))
+
+
+def _twist(result: Result) -> Iterator[str]:
+    """How much core a metre of twisted cable holds, and the matrix per metre of cable where it is short enough."""
+    C, twist = result.per_cable_length, result.twist  # noqa: N806 - the letter of the formula
+    if C is None or twist is None:
+        return
+    yield from _wrapped(
+        f"Twist: lay length {length_text(twist.lay_length)}, pitch circle {length_text(twist.pitch_diameter)};"
+        f" 1 m of cable holds {twist.length_factor:.6f} m of each core, and all above is per metre of core"
+    )
+    if len(C.conductors) <= WHOLE_MATRIX:
+        yield f"{MARGIN}Maxwell capacitance per metre of cable, pF/m"
+        yield from _matrix(C.conductors, _entries(C.value, C.half_width))
 
 
 def _entries(value: Floats, half_width: Floats) -> list[list[str]]:

@@ -91,7 +91,7 @@ def test_cuts_form_a_tree_of_indicators_with_unit_jump() -> None:
     mesh = first_mesh(build_layout(touching_pair()), Grading())
     tree = cut_tree(mesh)
     assert len(tree.cuts) == 2
-    assert_allclose(np.abs(np.linalg.det(tree.behind)), 1.0, rtol=1e-15)
+    assert_allclose(np.abs(np.linalg.det(tree.charges)), 1.0, rtol=1e-15)
     for cut in tree.cuts:
         assert len(cut.triangle) == len(set(zip(cut.triangle.tolist(), cut.corner.tolist(), strict=True)))
 

@@ -4,7 +4,17 @@ from collections.abc import Callable
 
 import numpy as np
 import pytest
-from multipoles import InOpenSpace, InShield, OverPlane, Wire, capacitance
+from multipoles import (
+    InOpenSpace,
+    InShield,
+    Layered,
+    OverGroundedSlab,
+    OverHalfSpace,
+    OverPlane,
+    OverSlab,
+    Wire,
+    capacitance,
+)
 from numpy.testing import assert_allclose
 from references import (
     eccentric_coax,
@@ -14,6 +24,7 @@ from references import (
     two_wires_by_ratio,
     wire_over_plane,
 )
+from scipy.integrate import quad
 
 CLOSED_FORMS = [
     # formula, digits, source of the digits
@@ -123,3 +134,39 @@ def test_multipoles_of_layered_coax() -> None:
     """Source: series capacitors."""
     C = capacitance((Wire(0j, 1.0, ((1.0, 2.25),)),), InShield(4.0))
     assert_allclose(C, [[layered_coax((1.0, 2.0, 4.0), (2.25, 1.0))]], rtol=1e-13)
+
+
+@pytest.mark.parametrize("around", [OverHalfSpace(4.0), OverSlab(0.7, 4.0), OverGroundedSlab(0.7, 4.0)])
+def test_images_by_the_fields_of_plane_waves(around: Layered) -> None:
+    """A unit line charge at height 0.4: what comes back to (0.3, 0.5), by images and by matching waves e^(-ky) at each
+    boundary, which is solved here as a linear system for every k. Source: separation of variables."""
+    x, y = 0.3, 0.5 + 0.4
+    field = sum(f * x / (x**2 + (y - shift) ** 2) for f, shift in around.images(1.0))
+    quadrature = quad(lambda k: _sent_back(around, k) * np.exp(-k * y) * np.sin(k * x), 0, 60, limit=400, epsabs=1e-13)
+    assert_allclose(field, quadrature[0], rtol=1e-9)
+
+
+def _sent_back(around: Layered, k: float) -> float:
+    """The answer r to a wave e^(ky): above e^(ky) + r e^(-ky), in the slab a e^(ky) + b e^(-ky), below c e^(ky)."""
+    eps = around.permittivity
+    if isinstance(around, OverHalfSpace):
+        r, _ = np.linalg.solve([[1, -1], [-1, -eps]], [-1, -1])
+        return float(r)
+    up, down = np.exp(-k * around.thickness), np.exp(k * around.thickness)
+    top = [[1, -1, -1], [-1, -eps, eps]]  # continuous potential and flux at y = 0
+    grounded, open_below = [0, up, down], [0, (eps - 1) * up, -(eps + 1) * down]  # potential zero; slope k times it
+    bottom = grounded if isinstance(around, OverGroundedSlab) else open_below
+    return float(np.linalg.solve([*top, bottom], [-1, -1, 0])[0])
+
+
+def test_layers_without_contrast_and_with_all_of_it() -> None:
+    """The background's permittivity in the slab changes nothing; an endless one makes it a plane (common practice)."""
+    pair = (Wire(-0.7 + 1.1j, 0.5, ((0.2, 4.0),)), Wire(0.9 + 1.4j, 0.4))
+    free = capacitance(pair, InOpenSpace())
+    assert_allclose(capacitance(pair, OverHalfSpace(1.0)), free, rtol=1e-12)
+    assert_allclose(capacitance(pair, OverSlab(0.3, 1.0)), free, rtol=1e-12)
+    shifted = tuple(Wire(w.centre + 0.3j, w.radius, w.coatings) for w in pair)
+    assert_allclose(capacitance(pair, OverGroundedSlab(0.3, 1.0)), capacitance(shifted, OverPlane()), rtol=1e-11)
+    over = capacitance(pair, OverPlane())
+    floating = over[0, 0] - over[0].sum() ** 2 / over.sum()  # the pair alone, the plane without charge
+    assert_allclose(capacitance(pair, OverHalfSpace(1e9)), [[floating]], rtol=1e-8)

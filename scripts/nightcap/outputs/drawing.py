@@ -10,8 +10,10 @@ import numpy as np
 
 from nightcap.geometry.case import Case, GroundPlane, Shield
 from nightcap.geometry.curves import Floats
+from nightcap.geometry.domain import straight_edges
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.shapes import Shape
+from nightcap.geometry.slab import Slab
 from nightcap.outputs.outlines import points_along
 
 MARGIN = {Shield: 0.08, GroundPlane: 0.35}
@@ -68,11 +70,16 @@ def view_of(case: Case) -> View:
         room = CLOSE_UP * float((inner_high - inner_low).max())
         if room < float((high - low).max()) / 2:  # small conductors in a wide shield: look at these
             low, high = np.maximum(low, inner_low - room / 2), np.minimum(high, inner_high + room / 2)
-    if isinstance(case.boundary, GroundPlane):
-        low[1] = min(low[1], case.boundary.at)
+    else:
+        heights = [y for d in case.dielectrics if isinstance(d.shape, Slab) for y in d.shape.heights]
+        low[1], high[1] = min([low[1], *heights]), max([high[1], *heights])
+    for line in straight_edges(case):
+        low[line.axis] = line.at
     margin = MARGIN.get(type(case.boundary), OPEN_MARGIN) * float((high - low).max())
-    bottom = low[1] - (0.2 * margin if isinstance(case.boundary, GroundPlane) else margin)
-    return View(float(low[0] - margin), float(bottom), float(high[0] + margin), float(high[1] + margin))
+    start = low - margin
+    for line in straight_edges(case):
+        start[line.axis] = line.at - 0.2 * margin
+    return View(float(start[0]), float(start[1]), float(high[0] + margin), float(high[1] + margin))
 
 
 def _box(shapes: Iterable[Shape]) -> tuple[Floats, Floats]:
@@ -88,4 +95,5 @@ def _shapes(case: Case) -> Iterable[Shape]:
     for conductor in case.conductors:
         yield conductor.shape.grown(sum(coating.thickness for coating in conductor.coatings))
     for dielectric in case.dielectrics:
-        yield dielectric.shape
+        if not isinstance(dielectric.shape, Slab):
+            yield dielectric.shape

@@ -44,7 +44,7 @@ class FluxSheet:
 
 def flux_sheet(corners: Floats, flux: Floats, far: Flags, rim: Rim | None, size: float) -> FluxSheet:
     """Finds which triangles touch, also across the rim. size : of the layout, m; corners agree to 1e-9 of it."""
-    grid = np.rint(corners.reshape(-1, 2) / (1e-9 * size)).astype(np.int64)
+    grid = np.rint(_drawn_in(corners.reshape(-1, 2), size) / (1e-9 * size)).astype(np.int64)
     sheet = np.repeat(far, 3).astype(np.int64)
     labels = _labels(grid[:, 0], grid[:, 1], sheet).reshape(-1, 3)
     neighbour = _partners(labels, np.ones(labels.shape, dtype=bool))
@@ -81,6 +81,12 @@ def unfolded(points: Floats, rim: Rim | None) -> Floats:
     return true
 
 
+def _drawn_in(points: Floats, size: float) -> Floats:
+    """Points (n, 2) with their distances from the middle made logarithmic: far away, they agree less closely."""
+    away = points - np.median(points, axis=0)
+    return np.asarray(np.sign(away) * size * np.log1p(np.abs(away) / size))
+
+
 def _labels(*columns: Ints) -> Ints:
     """Numbers that are equal where all columns are."""
     order = np.lexsort(columns)
@@ -107,16 +113,20 @@ def _partners(labels: Ints, wanted: Flags) -> Ints:
 
 def _starts(sheet: FluxSheet, surface: Flags, count: int) -> Iterator[tuple[int, float]]:
     """Edges, and the fraction along each, that cut the charge of a surface into equal parts."""
-    edges = _in_order(sheet, np.flatnonzero(surface))
+    edges, along = _in_order(sheet, np.flatnonzero(surface))
     charge = np.abs(np.roll(sheet.flux, -1, axis=1) - sheet.flux).reshape(-1)[edges]
     reached = np.concatenate([[0.0], np.cumsum(charge)])
     for level in (np.arange(count) + 0.5 + ASIDE) / count * reached[-1]:
         k = min(int(np.searchsorted(reached, level, side="right")) - 1, len(edges) - 1)
-        yield int(edges[k]), float((level - reached[k]) / charge[k]) if charge[k] > 0 else 0.5
+        fraction = float((level - reached[k]) / charge[k]) if charge[k] > 0 else 0.5
+        yield int(edges[k]), fraction if along[k] else 1.0 - fraction
 
 
-def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
-    """Edges of a surface as they follow each other, from where the field is strongest."""
+def _in_order(sheet: FluxSheet, edges: Ints) -> tuple[Ints, Flags]:
+    """Edges of a surface as they follow each other, and whether each is walked from its first end to its last.
+
+    From an open end, if the surface has one, else from where the field is strongest.
+    """
     first, last = sheet.labels.reshape(-1), np.roll(sheet.labels, -1, axis=1).reshape(-1)
     step = np.roll(sheet.corners, -1, axis=1) - sheet.corners
     length = np.hypot(step[..., 0], step[..., 1]).reshape(-1)
@@ -125,18 +135,22 @@ def _in_order(sheet: FluxSheet, edges: Ints) -> Ints:
     for edge in edges.tolist():
         for end in (int(first[edge]), int(last[edge])):
             touching.setdefault(end, []).append(edge)
-    left = dict.fromkeys(edges[np.argsort(-strength[edges], kind="stable")].tolist())
-    ordered = []
+    is_inner = np.array(
+        [len(touching[a]) > 1 < len(touching[b]) for a, b in zip(first[edges], last[edges], strict=True)]
+    )
+    left = dict.fromkeys(edges[np.lexsort((-strength[edges], is_inner))].tolist())
+    ordered, along = [], []
     while left:
         current: int | None = next(iter(left))
-        end = -1
+        assert current is not None  # noqa: S101 - there is one left
+        start = int(last[current]) if len(touching[int(last[current])]) == 1 else int(first[current])
         while current is not None:
             del left[current]
             ordered.append(current)
-            ends = (int(first[current]), int(last[current]))
-            end = ends[0] if end == ends[1] else ends[1]
-            current = next((e for e in touching[end] if e in left), None)
-    return np.array(ordered, dtype=np.int64)
+            along.append(start == int(first[current]))
+            start = int(last[current] if along[-1] else first[current])
+            current = next((e for e in touching[start] if e in left), None)
+    return np.array(ordered, dtype=np.int64), np.array(along, dtype=np.bool_)
 
 
 def _follow(sheet: FluxSheet, edge: int, fraction: float) -> tuple[list[Floats], list[bool]]:

@@ -9,12 +9,13 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.spatial import ConvexHull
 
-from nightcap.geometry.case import Case, OpenSpace
+from nightcap.geometry.case import Case
 from nightcap.geometry.curves import Floats, Point
 from nightcap.geometry.gaps import smallest_gap, surfaces
 from nightcap.geometry.motion import Motion
 from nightcap.geometry.painting import Drawing, box
 from nightcap.geometry.shapes import Outline
+from nightcap.geometry.slab import Slab
 from nightcap.outputs.outlines import points_along
 
 
@@ -38,20 +39,21 @@ def measures(case: Case, drawing: Drawing) -> list[Measure]:
     gap = smallest_gap(surfaces(case, drawing))
     if gap and gap.width > drawing.tolerance:  # else they meet, which is told as a mistake
         names = [conductor.name for conductor in case.conductors]
-        names += [] if isinstance(case.boundary, OpenSpace) else [case.boundary.name]
+        names += [case.outer_conductor or ""]
         one, two = (names[k] for k in gap.conductors)
         found.append(Measure(f"narrowest gap, {one} to {two}", gap.ends))
-    figures = [_caliper(f"smallest figure, {name}", outline) for name, outline in _figures(drawing)]
+    figures = [_caliper(f"smallest figure, {name}", outline) for name, outline in _figures(case, drawing)]
     layers = list(_layers(case))
     found += [min(kind, key=lambda measure: measure.length) for kind in (figures, layers) if kind]
     return found
 
 
-def _figures(drawing: Drawing) -> Iterator[tuple[str, Outline]]:
-    """Conductors and dielectrics, without coatings."""
+def _figures(case: Case, drawing: Drawing) -> Iterator[tuple[str, Outline]]:
+    """Conductors and dielectrics, without coatings and slabs."""
+    slabs = {dielectric.name for dielectric in case.dielectrics if isinstance(dielectric.shape, Slab)}
     for drawn in drawing.drawn:
         group, _, name = drawn.key.partition(".")
-        if drawn.material is None or group == "dielectrics":
+        if drawn.material is None or (group == "dielectrics" and name not in slabs):
             yield name, drawn.outline
 
 

@@ -9,13 +9,15 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from nightcap.geometry.case import Case, GroundPlane
+from nightcap.geometry.case import Case, Shield
 from nightcap.geometry.curves import Floats
+from nightcap.geometry.domain import straight_edges
+from nightcap.geometry.symmetry import SymmetryLine
 from nightcap.lengths import LengthUnit, fitting_unit
 from nightcap.outputs.drawing import Drawing, View, view_of
 from nightcap.outputs.field_lines import field_lines, flux_sheet, unfolded
 from nightcap.outputs.labels import Labels, literal
-from nightcap.outputs.outlines import conductor_loops, interface_lines, region_loops, surface_lines
+from nightcap.outputs.outlines import clipped, conductor_loops, interface_lines, region_loops, surface_lines
 from nightcap.result import Result
 from nightcap.whole_file import write_whole
 
@@ -36,6 +38,8 @@ HUE = "#0072b2"
 STYLES = (("1.0", ""), ("0.93", "...."), ("0.87", "////"), ("0.95", "xxxx"), ("0.81", "||||"), ("0.90", "\\\\\\\\"))
 """Tone and hatch of the materials, in turn."""
 HATCH = "0.72"
+MAGNETIC: dict[str, Any] = {"color": "0.15", "linewidth": 1.0, "linestyle": (0, (8, 2, 1, 2)), "zorder": 7}
+"""Lines of symmetry that no flux passes."""
 
 
 class Picture:
@@ -68,6 +72,7 @@ def png(drawing: Drawing) -> bytes:
         _materials(axes, drawing, view)
         _fields(axes, drawing, view)
         _conductors(axes, drawing, view)
+        _magnetic_walls(axes, drawing, view)
         _scale_bar(axes, view)
         figure.legend(handles=legend, loc="outside lower center", ncols=2, frameon=False, fontsize=7)
         content = io.BytesIO()
@@ -103,18 +108,30 @@ def _materials(axes: Axes, drawing: Drawing, view: View) -> None:
         style = {"facecolor": tone, "edgecolor": HATCH, "hatch": hatch, "linewidth": 0}
         if region.far:
             axes.add_patch(_beyond_rim(drawing.case, view, zorder=0, **style))
-        else:
-            axes.add_patch(filled(region_loops(drawing.layout, region), zorder=1, **style))
+            continue
+        loops = region_loops(drawing.layout, region)
+        if drawing.layout.wall:  # it reaches so far out that it could not be drawn
+            loops = [part for loop in loops if len(part := clipped(loop, *_beyond_view(view)))]
+        if loops:
+            axes.add_patch(filled(loops, zorder=1, **style))
     for line in interface_lines(drawing.layout):
         axes.plot(*line.T, color="0.4", linewidth=0.6, zorder=2)
+
+
+def _beyond_view(view: View) -> tuple[Floats, Floats]:
+    """A box somewhat larger than what is seen, so that its edges are not."""
+    low, high = np.array([view.left, view.bottom]), np.array([view.right, view.top])
+    return low - 0.1 * (high - low), high + 0.1 * (high - low)
 
 
 def _beyond_rim(case: Case, view: View, **style: Any) -> Any:
     """All that the view shows of unbounded space; what is near covers it."""
     from matplotlib.patches import Rectangle
 
-    bottom = case.boundary.at if isinstance(case.boundary, GroundPlane) else view.bottom
-    return Rectangle((view.left, bottom), view.width, view.top - bottom, **style)
+    start = [view.left, view.bottom]
+    for line in straight_edges(case):
+        start[line.axis] = line.at
+    return Rectangle((start[0], start[1]), view.right - start[0], view.top - start[1], **style)
 
 
 def style_of(material: int) -> tuple[str, str]:
@@ -178,7 +195,7 @@ def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
     drawn = {conductor.name for conductor in drawing.case.conductors}
     for k, name in enumerate(layout.conductors):
         if name in drawn:
-            loops = conductor_loops(layout, k)
+            loops = conductor_loops(layout, k, drawing.case.symmetry)
             axes.add_patch(filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
             axes.add_patch(filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
             _name(labels, name, np.concatenate(loops))
@@ -189,10 +206,24 @@ def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
 
 
 def _outer_surface(drawing: Drawing, conductor: int, view: View) -> list[Floats]:
-    boundary = drawing.case.boundary
-    if isinstance(boundary, GroundPlane):
-        return [np.array([[view.left, boundary.at], [view.right, boundary.at]])]
-    return surface_lines(drawing.layout, conductor)
+    if isinstance(drawing.case.boundary, Shield):
+        return surface_lines(drawing.layout, conductor)
+    return [_edge_in_view(line, drawing.case, view) for line in straight_edges(drawing.case) if line.is_electric]
+
+
+def _edge_in_view(line: SymmetryLine, case: Case, view: View) -> Floats:
+    """The part of a straight edge that is seen, up to where it meets another one."""
+    start, end = np.array([view.left, view.bottom]), np.array([view.right, view.top])
+    for edge in straight_edges(case):
+        start[edge.axis] = edge.at
+    end[line.axis] = line.at
+    return np.array([start, end])
+
+
+def _magnetic_walls(axes: Axes, drawing: Drawing, view: View) -> None:
+    for line in drawing.case.symmetry:
+        if not line.is_electric:
+            axes.plot(*_edge_in_view(line, drawing.case, view).T, **MAGNETIC)
 
 
 def _name(labels: Labels, name: str, outline: Floats) -> None:
@@ -236,6 +267,8 @@ def _legend(drawing: Drawing) -> list[Any]:
         label = f"{literal(material.name)} " if material.name else ""
         label += rf"$\varepsilon_r$ = {material.permittivity:.4g}"
         handles.append(Patch(facecolor=tone, edgecolor="0.5", hatch=hatch, label=label))
+    if any(not line.is_electric for line in drawing.case.symmetry):
+        handles.append(Line2D([], [], label="magnetic wall: mirror image beyond", **MAGNETIC))
     driven = literal(drawing.conductors[0])
     handles.append(Line2D([], [], color=HUE, linewidth=0.9, label=f"equipotentials: {driven} at 1 V, others 0 V"))
     handles.append(
@@ -247,5 +280,5 @@ def _legend(drawing: Drawing) -> list[Any]:
 
 
 def _conductor_label(drawing: Drawing) -> str:
-    reference = literal(drawing.layout.conductors[drawing.layout.reference])
+    reference = literal(", ".join(drawing.case.reference_pieces))
     return f"conductors; reference, 0 V: {reference}"

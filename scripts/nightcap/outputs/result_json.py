@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from nightcap.geometry.errors import Problem
+from nightcap.geometry.twist import Twist
 from nightcap.result import Capacitance, Result
 from nightcap.whole_file import write_whole
 
@@ -49,14 +50,29 @@ def result_document(result: Result) -> dict[str, Any]:
         "rounds": [_fields(r) for r in result.rounds],
         "seconds": dict(result.seconds),
         "expect": _comparison(result),
+        "notes": list(result.notes),
         "warnings": list(result.warnings),
         "errors": [_error(problem) for problem in result.problems],
         "provenance": dict(result.provenance),
     }
+    if result.reference_pieces:
+        document["reference_pieces"] = list(result.reference_pieces)
+    if result.twist:
+        document["twist"] = _twist(result, result.twist)
     if result.before_reduction:
         full = result.before_reduction
         document["before_reduction"] = {"conductors": list(full.conductors), "capacitance": _matrices(full)}
     return document
+
+
+def _twist(result: Result, twist: Twist) -> dict[str, Any]:
+    """Lengths in m; the matrix per metre of cable instead of per metre of core."""
+    C = result.per_cable_length  # noqa: N806 - the letter of the formula
+    return {
+        **dataclasses.asdict(twist),
+        "length_factor": twist.length_factor,
+        "capacitance_per_cable_length": _matrices(C) if C else None,
+    }
 
 
 def _matrices(C: Capacitance) -> dict[str, Any]:  # noqa: N803 - the letter of the formula

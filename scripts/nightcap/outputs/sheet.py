@@ -10,8 +10,9 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from nightcap.geometry.case import Case, Material, OpenSpace
+from nightcap.geometry.case import Case, Material, Shield
 from nightcap.geometry.curves import Floats, Point
+from nightcap.geometry.domain import straight_edges
 from nightcap.geometry.errors import Problem
 from nightcap.geometry.painting import Drawing, paint
 from nightcap.geometry.shapes import Outline, chains
@@ -85,17 +86,11 @@ def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
 
 
 def _extent(case: Case, drawing: Drawing) -> tuple[Floats, Floats]:
-    """Corners of the box around all that is drawn, the shield included."""
-    outlines = [drawn.outline for drawn in drawing.drawn]
-    if drawing.rim is None:
-        outlines.append(drawing.domain)
-    elif not isinstance(case.boundary, OpenSpace):
-        (x, y), _ = drawing.rim
-        ends = np.array([[x, y], [x, y]])
-        points = np.concatenate([ends, *(points_along(curve) for outline in outlines for curve in outline)])
-        return points.min(axis=0), points.max(axis=0)
-    points = np.concatenate([points_along(curve) for outline in outlines for curve in outline])
-    return points.min(axis=0), points.max(axis=0)
+    """Corners of the box around all that is drawn, the shield and straight walls included; of slabs the edges."""
+    low, high = (corner.copy() for corner in drawing.domain.shown)
+    for line in straight_edges(case):
+        low[line.axis], high[line.axis] = min(low[line.axis], line.at), max(high[line.axis], line.at)
+    return low, high
 
 
 def _palette(case: Case, drawing: Drawing) -> list[Material]:
@@ -105,19 +100,20 @@ def _palette(case: Case, drawing: Drawing) -> list[Material]:
 
 def _paint(axes: Axes, case: Case, drawing: Drawing, palette: list[Material]) -> None:
     """Figure over figure, in the order in which they cover each other."""
-    if drawing.rim is None:
+    if isinstance(case.boundary, Shield):
         tone, hatch = style_of(0)
-        loops = loops_of(drawing.domain)
+        loops = loops_of(drawing.domain.outline)
         axes.add_patch(filled(loops, facecolor=tone, edgecolor="0.72", hatch=hatch, linewidth=0, zorder=1))
         axes.add_patch(filled(loops, fill=False, edgecolor="0.1", linewidth=2.0, zorder=1.5))
-    elif not isinstance(case.boundary, OpenSpace):
-        axes.axhline(drawing.rim[0][1], color="0.1", linewidth=2.0, zorder=1.5)
+    for line in straight_edges(case):
+        wall = axes.axvline if line.axis == 0 else axes.axhline
+        wall(line.at, color="0.1", linewidth=2.0, linestyle="-" if line.is_electric else "--", zorder=4)
     for order, drawn in enumerate(drawing.drawn):
         tone, hatch = (METAL, "//////") if drawn.material is None else style_of(palette.index(drawn.material))
         loops, level = loops_of(drawn.outline), 2 + order * 1e-3
         axes.add_patch(filled(loops, facecolor=tone, edgecolor="0.72", hatch=hatch, linewidth=0, zorder=level))
-        line = 0.9 if drawn.material is None else 0.6
-        axes.add_patch(filled(loops, fill=False, edgecolor="0.15", linewidth=line, zorder=level + 5e-4))
+        thick = 0.9 if drawn.material is None else 0.6
+        axes.add_patch(filled(loops, fill=False, edgecolor="0.15", linewidth=thick, zorder=level + 5e-4))
 
 
 def _names(case: Case, labels: Labels) -> None:
