@@ -17,6 +17,7 @@ from nightcap.geometry.errors import CaseError
 from nightcap.geometry.layout import FAR_WALL, MAGNETIC_WALL, FarWall, Layout, Piece, Region, conductor_side
 from nightcap.geometry.layout_checks import find_problems
 from nightcap.geometry.painting import Drawing, paint
+from nightcap.geometry.seams import with_clear_seams
 from nightcap.geometry.shapes import chains
 from nightcap.geometry.symmetry import SymmetryLine
 
@@ -45,7 +46,7 @@ def _faces(drawing: Drawing) -> tuple[Arrangement, list[frozenset[int]]]:
     Outlines with holes are several closed chains; a face lies inside if an odd number of these go around it.
     """
     owned = [(number, chain) for number, outline in enumerate(drawing.outlines) for chain in chains(outline)]
-    owner, loops = [number for number, _ in owned], [chain for _, chain in owned]
+    owner, loops = [number for number, _ in owned], with_clear_seams([chain for _, chain in owned], drawing.tolerance)
     plane = arrange(loops, drawing.tolerance)
     counts = [Counter(owner[chain] for chain in around) for around in plane.memberships(loops)]
     members = [frozenset(number for number, count in counted.items() if count % 2) for counted in counts]

@@ -197,6 +197,15 @@ def test_counts_do_not_change_with_scale_turn_and_place(case: Case, scale: float
     assert len(build_layout(moved(case, scale, turn, shift)).regions) == len(before)
 
 
+@pytest.mark.parametrize("turn", [1e-12, 1e-9, 1e-7, 1e-6, 2.54e-5, 1e-4, 1e-3])
+@pytest.mark.parametrize("case", [touching_pair(), bundle(1, 1.0, 1.6)])
+def test_contacts_close_beside_the_ends_of_arcs(case: Case, turn: float) -> None:
+    """Two curves that touch are within the tolerance of each other some way to either side."""
+    layout = build_layout(moved(case, 1.0, turn, 0.0))
+    assert len(layout.regions) == len(build_layout(case).regions)
+    assert min(piece.curve.length for piece in layout.pieces) > 1e-4
+
+
 def test_counts_do_not_change_with_the_order_of_conductors() -> None:
     case = bundle(1, 1.0, 1.5)
     assert counts(build_layout(replace(case, conductors=case.conductors[::-1]))) == counts(build_layout(case))
