@@ -108,9 +108,13 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
     openings = np.diff([*angles, angles[0] + math.tau])
     smooth = len(angles) == 2 and abs(openings[0] - math.pi) < 1e-6
     cusped = bool((openings < 1e-6).any())
-    if smooth or cusped:
+    if cusped:
         return None
-    on_conductor = any(min(piece.sides) < 0 for _, piece in meeting)
+    if sum(piece.surface is not None for _, piece in meeting) == 1:
+        return grading.tip
+    if smooth:
+        return None
+    on_conductor = any(piece.surface is not None for _, piece in meeting)
     if on_conductor and _opens_wide(meeting):
         return grading.corner
     return grading.bend if len(angles) > 2 or not on_conductor else None
@@ -118,11 +122,13 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
 
 def _opens_wide(meeting: list[tuple[float, Piece]]) -> bool:
     """Whether the dielectric around a point of a conductor's surface spans more than a half turn."""
-    surface = sorted(angle % math.tau for angle, piece in meeting if min(piece.sides) < 0)
+    surface = sorted(angle % math.tau for angle, piece in meeting if piece.surface is not None)
     if len(surface) != 2:
         return True
     between = surface[1] - surface[0]
-    others = [angle % math.tau for angle, piece in meeting if min(piece.sides) >= 0]
+    if any(piece.conductor is not None for _, piece in meeting):  # a strip has dielectric on both sides
+        return abs(between - math.pi) > 1e-6
+    others = [angle % math.tau for angle, piece in meeting if piece.surface is None]
     if others:
         inside = surface[0] < others[0] < surface[1]
         return (between if inside else math.tau - between) > math.pi + 1e-6

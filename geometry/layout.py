@@ -29,6 +29,14 @@ class Piece:
     end: int
     sides: tuple[int, int]
     """What lies left and right: a region number, or ``conductor_side(k)``. On the rim: the near region, the far one."""
+    conductor: int | None = None
+    """The conductor that the piece itself is, of no thickness; both its sides may be regions, even the same one."""
+
+    @property
+    def surface(self) -> int | None:
+        """The conductor on whose surface the piece lies, or that it is."""
+        lowest = min(self.sides)
+        return self.conductor if lowest >= 0 else conductor_side(lowest)
 
 
 @dataclass(frozen=True)
@@ -42,6 +50,8 @@ class Region:
     """Index into Layout.materials."""
     far: bool = False
     """True for the inverted outside of the rim."""
+    embedded: tuple[int, ...] = ()
+    """Numbers of the pieces of thin strips inside it, which belong to no loop; they may end on one."""
 
 
 @dataclass(frozen=True, eq=False)

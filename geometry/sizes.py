@@ -34,7 +34,7 @@ def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
         cells = order[bounds[k] : bounds[k + 1]]
         load = np.concatenate([[0.0], np.cumsum(cell_load[cells])])
         ends = np.concatenate([t0[cells], [1.0]])
-        n = max(math.ceil(load[-1] - 0.2), 2 if k in twins else 1)
+        n = max(math.ceil(load[-1] - 0.2), 2 if k in twins or layout.pieces[k].conductor is not None else 1)
         divisions.append(np.interp(np.linspace(0.0, load[-1], n + 1), load, ends))
     return divisions
 
@@ -57,7 +57,7 @@ class _Sizes:
         curvature = np.abs([piece.curve.curvature for piece in pieces])
         self.radius = np.where(curvature > 0, 1 / np.maximum(curvature, 1e-300), np.inf)
         self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, grading.turn * self.radius)
-        at_corners = corner_sizes(layout, Grading(corner=COARSE, bend=COARSE))
+        at_corners = corner_sizes(layout, Grading(corner=COARSE, tip=COARSE, bend=COARSE))
         self.sources = layout.points[list(at_corners)]
         self.source_size = np.array(list(at_corners.values()))
         self.near = _close_pairs(layout, self.coarsest)

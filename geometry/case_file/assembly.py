@@ -31,9 +31,11 @@ from nightcap.geometry.case_file.schema import (
     checked,
 )
 from nightcap.geometry.case_file.shapes import shaped
+from nightcap.geometry.case_file.strip import BENT_TOO_SHARPLY
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.shapes import Polygon
+from nightcap.geometry.strip import Strip
 
 MOST_LAYERS = 20
 
@@ -104,6 +106,8 @@ def _conductors(tree: Tree, problems: Problems, context: dict[str, Any]) -> tupl
             keys, shape = read
             if coatings and isinstance(shape, Polygon) and not shape.is_convex:
                 problems.add(under(path, "coatings"), "a coating can be laid around a convex polygon only")
+            if isinstance(shape, Strip) and not shape.takes([coating.thickness for coating in coatings]):
+                problems.add(under(path, "coatings"), BENT_TOO_SHARPLY)
             conductors.append(Conductor(name, shape, coatings, keys.floating))
     return tuple(conductors)
 

@@ -18,20 +18,12 @@ from nightcap.geometry.case_file.quantities import (
     Points,
     PositiveLength,
 )
-from nightcap.geometry.case_file.schema import Entry, EntryType, Text, checked
+from nightcap.geometry.case_file.schema import ConductorKeys, Entry, EntryType, checked
+from nightcap.geometry.case_file.shape_keys import ShapeKeys
+from nightcap.geometry.case_file.strip import StripKeys
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import Circle, Polygon, Rectangle, Shape, signed_area
-
-
-class ShapeKeys(Entry):
-    """What every shape has."""
-
-    shape: Text = Field(description="Word for the shape.")
-
-    def figure(self) -> Shape:
-        """The figure described."""
-        raise NotImplementedError
 
 
 class CircleKeys(ShapeKeys):
@@ -103,7 +95,12 @@ class PolygonKeys(ShapeKeys):
         return Polygon(self.points)
 
 
-SHAPES: dict[str, type[ShapeKeys]] = {"circle": CircleKeys, "rectangle": RectangleKeys, "polygon": PolygonKeys}
+SHAPES: dict[str, type[ShapeKeys]] = {
+    "circle": CircleKeys,
+    "rectangle": RectangleKeys,
+    "polygon": PolygonKeys,
+    "strip": StripKeys,
+}
 """A new shape is one more class and one more line here."""
 
 
@@ -120,6 +117,9 @@ def shaped(
             problems.add(under(path, "shape"), one_of(word, SHAPES))
         else:
             problems.add(path, f"the key 'shape' is missing; allowed: {listed(SHAPES)}")
+        return None
+    if SHAPES[word].is_thin and own is not ConductorKeys:
+        problems.add(under(path, "shape"), f"a {word} encloses nothing; only a conductor can be one")
         return None
     entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
     return None if entry is None else (entry, entry.figure())
