@@ -88,7 +88,7 @@ class Arrangement:
 
     @cached_property
     def areas(self) -> tuple[float, ...]:
-        """The area inside each loop, m^2, negative for clockwise ones; exactly 0 where a loop only goes there and back."""
+        """The area inside each loop, m^2, negative for clockwise ones; exactly 0 for a walk there and back."""
         return tuple(math.fsum(self._swept(half) for half in loop) for loop in self.loops)
 
     def _swept(self, half: int) -> float:

@@ -11,9 +11,12 @@ from nightcap.geometry.curves import Floats, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Ints, Triangulation, ascending
+from nightcap.geometry.tips import is_tip, tip_fraction
 
 SHRINK = 0.4
 """Size of each layer relative to the one around it."""
+FINEST = 1e-11
+"""Least edge length at a corner relative to its coordinates, which have 16 digits."""
 
 
 def corner_sizes(layout: Layout, grading: Grading) -> dict[int, float]:
@@ -24,7 +27,7 @@ def corner_sizes(layout: Layout, grading: Grading) -> dict[int, float]:
             arms.setdefault(point, []).append((direction_and_bend(piece.curve, from_start)[0], piece))
     sizes = {}
     for point, meeting in arms.items():
-        fraction = _fraction(meeting, grading)
+        fraction = tip_fraction(layout, meeting, grading) if is_tip(layout, meeting) else _fraction(meeting, grading)
         if fraction is not None:
             sizes[point] = fraction * min(piece.curve.length for _, piece in meeting)
     return sizes
@@ -40,7 +43,8 @@ def with_layers(flat: Triangulation, spans: Floats, grading: Grading) -> tuple[T
         around = np.flatnonzero((flat.triangles == corner).any(axis=1))
         spokes = np.setdiff1d(flat.triangles[around], [corner])
         reach = np.hypot(*(flat.points[spokes] - flat.points[corner]).T).min()
-        layers = math.ceil(math.log(max(reach / size, 1.0)) / -math.log(SHRINK))
+        least = max(size, FINEST * float(np.abs(flat.points[[corner, *spokes]]).max()))
+        layers = math.ceil(math.log(max(reach / least, 1.0)) / -math.log(SHRINK))
         if layers:
             flat, spans = _layered(flat, spans, corner, around, spokes, layers)
     return flat, spans
@@ -108,11 +112,7 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
     openings = np.diff([*angles, angles[0] + math.tau])
     smooth = len(angles) == 2 and abs(openings[0] - math.pi) < 1e-6
     cusped = bool((openings < 1e-6).any())
-    if cusped:
-        return None
-    if sum(piece.surface is not None for _, piece in meeting) == 1:
-        return grading.tip
-    if smooth:
+    if smooth or cusped:
         return None
     on_conductor = any(piece.surface is not None for _, piece in meeting)
     if on_conductor and _opens_wide(meeting):

@@ -15,10 +15,10 @@ from nightcap.geometry.mesh import Flags, Ints, Triangulation, ascending
 def slit(flat: Triangulation, spans: Floats) -> tuple[Triangulation, Floats, Ints]:
     """Cuts a triangulation open along its strips.
 
-    Around each vertex of a strip the triangles between two of its edges form a sector. The widest keeps the vertex, every
-    other gets a copy; around a free end there is only one. From then on a strip is a boundary like any other.
-    spans : (B, 2) curve parameters of the curve edges. Returns the triangulation, the parameters of its curve edges, and
-    the row (B,) of the curve edge that each was before.
+    Around each vertex of a strip the triangles between two of its edges form a sector. The widest keeps the vertex,
+    every other gets a copy; around a free end there is only one. From then on a strip is a boundary like any other.
+    spans : (B, 2) curve parameters of the curve edges. Returns the triangulation, the parameters of its curve edges,
+    and the row (B,) of the curve edge that each was before.
     """
     on_strip = np.array([piece.conductor is not None for piece in flat.layout.pieces])[flat.curve_piece]
     if not on_strip.any():

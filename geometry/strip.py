@@ -11,7 +11,6 @@ from nightcap.geometry.crossing import cut_parameters
 from nightcap.geometry.curves import Arc, Curve, Point, Segment
 from nightcap.geometry.shapes import Outline
 
-
 STRAIGHT = 1e-9
 """A line that turns by less is straight, radians."""
 
@@ -48,7 +47,7 @@ class Strip:
 
     @property
     def sharpest(self) -> tuple[float, int]:
-        """The least angle, radians, between a part and the next one turned back, and the number from 1 of that point."""
+        """The least angle between two parts at a point, radians, and the number of that point from 1."""
         bends = (math.pi - abs(_turn(*self.points[k - 1 : k + 2])) for k in range(1, len(self.points) - 1))
         return min(((angle, k) for k, angle in enumerate(bends, start=2)), default=(math.pi, 0))
 

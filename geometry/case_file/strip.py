@@ -65,7 +65,7 @@ class StripKeys(ShapeKeys):
             raise ValueError(f"points: the strip runs back on itself at point {corner}")
         distance, one, two = strip.nearest
         if distance <= CLOSEST * size:
-            raise ValueError(f"points: part {one} and part {two} of the strip cross or touch; a strip must not meet itself")
+            raise ValueError(f"points: parts {one} and {two} of the strip cross or touch; it must not meet itself")
         return self
 
     def figure(self) -> Strip:

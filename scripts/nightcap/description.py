@@ -11,6 +11,7 @@ from nightcap.geometry.case import Case, Coating, GroundPlane, Limits, Material,
 from nightcap.geometry.curves import Point
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.shapes import Circle, Polygon, Rectangle
+from nightcap.geometry.strip import Strip
 from nightcap.lengths import length_text
 
 
@@ -69,6 +70,13 @@ def _(polygon: Polygon) -> str:
     low = tuple(min(point[k] for point in polygon.points) for k in (0, 1))
     high = tuple(max(point[k] for point in polygon.points) for k in (0, 1))
     return f"polygon of {len(polygon.points)} points, from {_point((low[0], low[1]))} to {_point((high[0], high[1]))}"
+
+
+@describe.register
+def _(strip: Strip) -> str:
+    through = "" if len(strip.points) == 2 else f" through {len(strip.points)} points"
+    ends = f"from {_point(strip.points[0])} to {_point(strip.points[-1])}"
+    return f"strip of no thickness{through}, {length_text(strip.length)} long, {ends}"
 
 
 @describe.register

@@ -38,7 +38,9 @@ def conductor_loops(layout: Layout, conductor: int) -> list[Floats]:
 
 
 def conductor_steps(layout: Layout, conductor: int) -> Iterator[int]:
-    """Signed pieces, as in Region.loops, that have the conductor on their left and the near sheet on the other side."""
+    """Signed pieces, as in Region.loops, that have the conductor on their left and the near sheet on the other side;
+    not those of thin strips.
+    """
     side = conductor_side(conductor)
     for k, piece in enumerate(layout.pieces):
         left, right = piece.sides
@@ -52,8 +54,13 @@ def interface_lines(layout: Layout) -> list[Floats]:
     return [
         points_along(piece.curve)
         for piece in layout.pieces
-        if min(piece.sides) >= 0 and not any(layout.regions[side].far for side in piece.sides)
+        if piece.surface is None and not any(layout.regions[side].far for side in piece.sides)
     ]
+
+
+def strip_lines(layout: Layout, conductor: int) -> list[Floats]:
+    """The pieces of a conductor that have no thickness."""
+    return [points_along(piece.curve) for piece in layout.pieces if piece.conductor == conductor]
 
 
 def surface_lines(layout: Layout, conductor: int) -> list[Floats]:

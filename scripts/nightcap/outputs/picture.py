@@ -13,7 +13,7 @@ from nightcap.geometry.curves import Floats
 from nightcap.lengths import LengthUnit, fitting_unit
 from nightcap.outputs.drawing import Drawing, View, view_of
 from nightcap.outputs.field_lines import field_lines, flux_sheet, unfolded
-from nightcap.outputs.outlines import conductor_loops, interface_lines, region_loops, surface_lines
+from nightcap.outputs.outlines import conductor_loops, interface_lines, region_loops, strip_lines, surface_lines
 from nightcap.result import Result
 from nightcap.whole_file import write_whole
 
@@ -30,6 +30,8 @@ LEVELS = np.arange(1, 10) / 10
 TRIANGLES = 30_000
 """About so many are sampled, which makes lines smooth at this size."""
 METAL, EDGE = "0.62", "0.15"
+STRIP = 2.0
+"""Width of the line that stands for a conductor of no thickness, points."""
 HUE = "#0072b2"
 """One blue, for equipotentials: apart from black in greyscale and for every kind of colour vision."""
 STYLES = (("1.0", ""), ("0.93", "...."), ("0.87", "////"), ("0.95", "xxxx"), ("0.81", "||||"), ("0.90", "\\\\\\\\"))
@@ -133,7 +135,12 @@ def _fields(axes: Axes, drawing: Drawing, view: View) -> None:
     corners = sample.points[sample.triangles]
     potential = sample.potential[0][sample.triangles]
     sheet = flux_sheet(
-        corners.copy(), sample.flux[0][sample.triangles], sample.far, drawing.layout.rim, drawing.layout.size
+        corners.copy(),
+        sample.flux[0][sample.triangles],
+        sample.far,
+        drawing.layout.rim,
+        drawing.layout.size,
+        sample.place[sample.triangles],
     )
     at_one_volt = potential > 1.0 - 1e-6
     surface = (at_one_volt & np.roll(at_one_volt, -1, axis=1)).reshape(-1) & (sheet.neighbour < 0)
@@ -174,10 +181,13 @@ def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
     drawn = {conductor.name for conductor in drawing.case.conductors}
     for k, name in enumerate(layout.conductors):
         if name in drawn:
-            loops = conductor_loops(layout, k)
-            axes.add_patch(_filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
-            axes.add_patch(_filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
-            _name(axes, name, np.concatenate(loops), view)
+            loops, strips = conductor_loops(layout, k), strip_lines(layout, k)
+            if loops:
+                axes.add_patch(_filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
+                axes.add_patch(_filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
+            for line in strips:
+                axes.plot(*line.T, color=EDGE, linewidth=STRIP, solid_capstyle="butt", zorder=6)
+            _name(axes, name, np.concatenate([*loops, *strips]), view)
         else:
             for line in _outer_surface(drawing, k, view):
                 axes.plot(*line.T, color=METAL, linewidth=9, solid_capstyle="round", zorder=0.5)
