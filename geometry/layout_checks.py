@@ -16,7 +16,7 @@ from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import Problem
 from nightcap.geometry.mesh import Ints
 from nightcap.geometry.painting import Drawing
-from nightcap.geometry.strip_checks import strip_findings
+from nightcap.geometry.thin_checks import strip_findings, vanished
 
 SMALLEST_GAP = 1e-6
 """Between two conductors, relative to the layout's size."""
@@ -30,6 +30,7 @@ def find_problems(
     members : for each loop of the arrangement the outlines around the face on its left.
     """
     found = dict.fromkeys(_overlaps(case, drawing, set(members)))
+    found |= dict.fromkeys(vanished(case, drawing, plane))
     found |= dict.fromkeys(strip_findings(case, drawing, plane, members, (_boundary_name(case), _sticks_out(case))))
     overlapping = {text_key for text_key, _, _ in found}
     contacts = [c for c in _contacts(case, drawing, plane) if c[0] not in overlapping]

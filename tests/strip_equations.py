@@ -1,15 +1,16 @@
 """Charges on infinitely thin strips from their integral equations, to some twelve digits: owes nothing to the program.
 
-Each straight part is run through by t from 0 to 1 with x' ~ t^(m-1) (1-t)^(n-1), which turns the density of charge at a
-free end (r^(-1/2), m = 2) and at a right-angled bend (r^(-1/3) and r^1, m = 3) into an analytic function of t. That one is a
-polynomial, collocated; the logarithms are integrated on intervals that shrink geometrically towards them. Source: common practice
-(spectral collocation with a smoothing substitution, e.g. Atkinson 1997 for edges, from memory).
+Each straight part is run through by t from 0 to 1 with x' ~ t^(m-1) (1-t)^(n-1), which turns the density of charge at
+a free end (r^(-1/2), m = 2) and at a right-angled bend (r^(-1/3) and r^1, m = 3) into an analytic function of t. A
+polynomial stands for it, collocated; the logarithms are integrated on intervals that shrink geometrically towards them.
+Source: common practice (spectral collocation after a smoothing substitution).
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.polynomial import chebyshev, legendre
@@ -93,7 +94,7 @@ def _graded(inner: tuple[float, ...]) -> tuple[Floats, Floats]:
     shrinking = 0.35 ** np.arange(34)
     marks = np.array([0.0, *inner, 1.0])
     breaks = [marks]
-    for low, high in zip(marks[:-1], marks[1:], strict=True):
+    for low, high in pairwise(marks.tolist()):
         breaks += [low + (high - low) / 2 * shrinking, high - (high - low) / 2 * shrinking]
     edges = np.unique(np.concatenate(breaks))
     x, w = legendre.leggauss(14)

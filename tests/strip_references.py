@@ -33,7 +33,7 @@ def strip_in_box(width: float, box: float, height: float) -> float:
 
 
 def coupled_striplines(width: float, gap: float, height: float) -> NDArray[np.float64]:
-    """(2, 2) two equal strips midway between planes, from the even and the odd mode. Source: Cohn 1955 (from memory)."""
+    """(2, 2) two equal strips midway between planes, by even and odd mode. Source: Cohn 1955 (from memory)."""
     one, both = (float(np.tanh(np.pi * x / (2 * height))) for x in (width, width + gap))
     even, odd = 4 * ratio(one * both), 4 * ratio(one / both)
     return np.array([[even + odd, even - odd], [even - odd, even + odd]]) / 2
@@ -50,10 +50,10 @@ def coplanar_pair(inner: float, outer: float) -> float:
 
 
 def strip_upright_on_plane(low: float, high: float) -> float:
-    """A strip perpendicular to a grounded plane, from height a to b: with its image a coplanar pair at twice the voltage."""
+    """A strip perpendicular to a grounded plane, from height a to b: with its image a coplanar pair."""
     return 2 * coplanar_pair(low, high)
 
 
 def cross(inner: float, outer: float) -> float:
-    """Four strips from a to b along the half axes, opposite ones joined: squaring the plane makes a coplanar pair, twice."""
+    """Strips from a to b along the half axes, opposite ones joined: squared, the plane holds a coplanar pair."""
     return 2 * coplanar_pair(inner**2, outer**2)

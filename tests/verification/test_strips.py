@@ -1,4 +1,4 @@
-"""Infinitely thin strips against closed forms and integral equations: the value agrees, the exact one is in the bracket."""
+"""Infinitely thin strips against closed forms and integral equations."""
 
 from __future__ import annotations
 
@@ -41,7 +41,7 @@ from nightcap.solver.solve import solve
 
 UNIT_CIRCLE = Shield(Circle((0.0, 0.0), 1.0))
 WIDE = Shield(Rectangle((0.0, 0.5), 14.0, 1.0))
-"""Two planes with walls so far off that they change nothing: exp(-2 pi 6) = 4e-17 is what a wall 6 heights away does."""
+"""Two planes with walls so far off that they change nothing: one 6 heights away does exp(-2 pi 6) = 4e-17."""
 
 
 def strip(*points: Point) -> Strip:

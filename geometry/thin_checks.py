@@ -1,4 +1,4 @@
-"""Geometric mistakes with infinitely thin strips: those that no face of the arrangement tells of."""
+"""Geometric mistakes that no face of the arrangement tells of: with thin strips, and what rounding swallows."""
 
 from __future__ import annotations
 
@@ -10,6 +10,16 @@ from nightcap.geometry.painting import Drawing
 
 Finding = tuple[tuple[str, str], str, str]
 """The pair that is in conflict, the key to blame, and the message."""
+
+
+def vanished(case: Case, drawing: Drawing, plane: Arrangement) -> Iterator[Finding]:
+    """Conductors of whose outline nothing is left, as all their points are one."""
+    left = {number for piece in plane.pieces for number, _ in piece.outlines}
+    for number, drawn in enumerate(drawing.drawn):
+        if number not in left and drawn.material is None and drawn.conductor is not None:
+            name = case.conductors[drawn.conductor].name
+            text = f"is too small for this layout, where points within {8 * drawing.tolerance:.1g} m are one"
+            yield (name, ""), f"conductors.{name}", text
 
 
 def strip_findings(
