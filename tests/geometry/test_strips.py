@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 from numpy.testing import assert_allclose
 
+from nightcap.geometry.arrangement import arrange
 from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.case import Case, Coating, Conductor, Dielectric, GroundPlane, Material, OpenSpace, Shield
 from nightcap.geometry.case_file import read_text
@@ -151,6 +152,23 @@ def test_ends_and_bends_are_corners_and_straight_joints_are_not() -> None:
     assert_allclose(sizes.pop((0.1, 0.4)), 0.001 * 0.4, rtol=1e-9)
     assert_allclose(sizes.pop((0.1, 0.0)), 0.01 * 0.3, rtol=1e-9)
     assert not sizes
+
+
+def test_an_end_on_a_dense_dielectric_is_graded_further() -> None:
+    """The share of the innermost ring of size h goes as h^(2 s): it must be the same as at an end with s = 1/2."""
+    layout = build_layout(CASES["up to an edge"])
+    s = 2 / math.pi * math.atan(0.5)  # permittivity 4 ahead
+    (size,) = (size for k, size in corner_sizes(layout, Grading(tip=1e-3)).items() if not layout.points[k].any())
+    assert_allclose(size, 0.5 * 1e-3 ** (0.5 / s), rtol=1e-6)
+
+
+def test_a_walk_along_a_strip_and_back_has_no_area_at_all() -> None:
+    """Not a tiny positive one, which would make it the outer boundary of a face."""
+    random = np.random.default_rng(271828)
+    for _ in range(20):
+        points = tuple((float(x), float(y)) for x, y in np.cumsum(random.uniform(0.1, 1.0, (7, 2)), axis=0) / 3)
+        plane = arrange([Strip(points).outline()], 1e-9)
+        assert plane.areas == (0.0,)
 
 
 def shoelace(curves: tuple[object, ...]) -> float:

@@ -259,6 +259,37 @@ def test_a_narrow_accuracy_is_met_in_few_rounds_and_little_time() -> None:
     assert_allclose(value, closed.stripline(1.0, 1.0), rtol=1e-6)
 
 
+def test_a_strip_close_to_a_plane_is_graded_to_the_gap_from_the_start() -> None:
+    """MEASURED: one round at order 4; graded to the strip's length alone it took six."""
+    solution = solve(build_layout(case([level(-0.5, 0.5, 0.01)], GroundPlane())), 1e-5)
+    assert solution.status == "met"
+    assert len(solution.rounds) <= 2
+
+
+def separate(parts: list[Part], least: float) -> bool:
+    t = np.linspace(0.0, 1.0, 101)
+    return all(
+        np.abs(one.at(t)[:, None] - two.at(t)[None]).min() > least for k, one in enumerate(parts) for two in parts[:k]
+    )
+
+
+@pytest.mark.parametrize("seed", range(3))
+def test_random_strips(seed: int) -> None:
+    """Two to four strips anywhere over a plane or in open space, not closer than a fifth of their length."""
+    random = np.random.default_rng(5772156 + seed)
+    done = 0
+    while done < 4:
+        count = int(random.integers(2, 5))
+        middle = random.uniform(-1.5, 1.5, count) + 1j * random.uniform(1.0, 3.0, count)
+        half = random.uniform(0.1, 0.8, count) * np.exp(1j * random.uniform(0.0, np.pi, count))
+        parts = [Part(k, m - h, m + h) for k, (m, h) in enumerate(zip(middle.tolist(), half.tolist(), strict=True))]
+        if separate(parts, 0.2):
+            done += 1
+            shapes = [strip((p.start.real, p.start.imag), (p.end.real, p.end.imag)) for p in parts]
+            boundary, green = ((GroundPlane(), over_plane), (OpenSpace(), open_space))[done % 2]
+            check_against(case(list(shapes), boundary), capacitance(parts, green, 40), 1e-5)
+
+
 def test_an_end_on_a_dense_dielectric_that_double_precision_cannot_resolve_still_gives_a_bracket() -> None:
     """There the potential goes as r^0.19: no mesh of ours gets to 1e-7, and the case says so."""
     layout = build_layout(case([IN_CIRCLE], UNIT_CIRCLE, filled(UNSEEN["ends on an edge"], 10.0)))
