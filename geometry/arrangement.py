@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections import deque
+from collections import Counter, deque
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
@@ -28,7 +28,18 @@ class CutPiece:
     start: int
     end: int
     outlines: tuple[tuple[int, bool], ...]
-    """The outlines that run along it, and whether in the same direction."""
+    """The outlines that run along it, and whether in the same direction; a strip's runs there and back."""
+
+    @property
+    def crossed(self) -> frozenset[int]:
+        """The outlines that one enters or leaves by crossing the piece: not a strip's, which encloses nothing."""
+        count = Counter(number for number, _ in self.outlines)
+        return frozenset(number for number, times in count.items() if times % 2)
+
+    @property
+    def strips(self) -> frozenset[int]:
+        """The outlines that run along it there and back."""
+        return frozenset(number for number, _ in self.outlines) - self.crossed
 
 
 @dataclass(frozen=True, eq=False)
@@ -76,8 +87,8 @@ class Arrangement:
 
     @cached_property
     def areas(self) -> tuple[float, ...]:
-        """The area inside each loop, m^2, negative for clockwise ones."""
-        return tuple(sum(self._swept(half) for half in loop) for loop in self.loops)
+        """The area inside each loop, m^2, negative for clockwise ones; exactly 0 for a walk there and back."""
+        return tuple(math.fsum(self._swept(half) for half in loop) for loop in self.loops)
 
     def _swept(self, half: int) -> float:
         curve = self.pieces[half // 2].curve
@@ -105,17 +116,32 @@ class Arrangement:
     @cached_property
     def holder(self) -> dict[int, int | None]:
         """For each clockwise loop the smallest counter-clockwise one around it, or None if it lies outside all."""
-        outer = sorted((k for k, area in enumerate(self.areas) if area > 0), key=lambda k: self.areas[k])
-        curves = [[self._walked(half) for half in self.loops[k]] for k in outer]
-        boxes = _Boxes(curves)
-        component = np.array([self.component[self.anchor(k)] for k in outer])
+        component = np.array([self.component[self.anchor(k)] for k in self._outer])
         holders: dict[int, int | None] = {}
         for k, area in enumerate(self.areas):
             if area <= 0:
                 point = self.points[self.anchor(k)]
-                around = np.flatnonzero(boxes.around(point) & (component != self.component[self.anchor(k)]))
-                holders[k] = next((outer[j] for j in around if winds_around(curves[j], point)), None)
+                holders[k] = self._innermost(point, component != self.component[self.anchor(k)])
         return holders
+
+    def innermost_around(self, point: Floats) -> int | None:
+        """The smallest counter-clockwise loop around a point that lies on no piece."""
+        return self._innermost(point, np.ones(len(self._outer), dtype=bool))
+
+    def _innermost(self, point: Floats, allowed: Flags) -> int | None:
+        curves, boxes = self._outer_curves
+        around = np.flatnonzero(boxes.around(point) & allowed)
+        return next((self._outer[j] for j in around if winds_around(curves[j], point)), None)
+
+    @cached_property
+    def _outer(self) -> list[int]:
+        """The counter-clockwise loops, the smallest first."""
+        return sorted((k for k, area in enumerate(self.areas) if area > 0), key=lambda k: self.areas[k])
+
+    @cached_property
+    def _outer_curves(self) -> tuple[list[list[Curve]], _Boxes]:
+        curves = [[self._walked(half) for half in self.loops[k]] for k in self._outer]
+        return curves, _Boxes(curves)
 
     def anchor_of(self, half: int) -> int:
         """The point where a half-edge starts."""
@@ -150,7 +176,7 @@ class Arrangement:
             for half in self.loops[loop]:
                 beyond = self.loop_of[half ^ 1]
                 if beyond not in found:
-                    found[beyond] = found[loop] ^ {k for k, _ in self.pieces[half // 2].outlines}
+                    found[beyond] = found[loop] ^ self.pieces[half // 2].crossed
                     queue.append(beyond)
         return tuple(found[k] for k in range(len(self.loops)))
 

@@ -91,13 +91,30 @@ class _Joined:
         ]
 
     @cached_property
-    def plane(self) -> Arrangement:
-        """What is left: the kept pieces between the points that they need."""
-        pieces = [self.whole.pieces[k] for k in self.kept]
+    def inner(self) -> list[int]:
+        """The pieces of strips that lie within one dielectric: no part of any loop."""
+        kept = set(self.kept)
+        return [k for k, piece in enumerate(self.whole.pieces) if k not in kept and self._strip(piece) is not None]
+
+    def _strip(self, piece: CutPiece) -> int | None:
+        """The conductor that a piece is, if a strip runs along it."""
+        owners = (self.drawing.drawn[number].conductor for number in piece.strips)
+        return next(owners, None)
+
+    @cached_property
+    def _renumbered(self) -> tuple[Floats, list[CutPiece]]:
+        """The points that kept and inner pieces need, and these pieces between them."""
+        pieces = [self.whole.pieces[k] for k in (*self.kept, *self.inner)]
         used = sorted({point for piece in pieces for point in (piece.start, piece.end)})
         number = {point: k for k, point in enumerate(used)}
-        renumbered = tuple(CutPiece(p.curve, number[p.start], number[p.end], p.outlines) for p in pieces)
-        return Arrangement(self.whole.points[used], renumbered)
+        renumbered = [CutPiece(p.curve, number[p.start], number[p.end], p.outlines) for p in pieces]
+        return self.whole.points[used], renumbered
+
+    @cached_property
+    def plane(self) -> Arrangement:
+        """What is left: the kept pieces, between the points of the layout."""
+        points, pieces = self._renumbered
+        return Arrangement(points, tuple(pieces[: len(self.kept)]))
 
     def content(self, half: int) -> Content:
         """What lies left of a half-edge of the joined plane."""
@@ -135,8 +152,14 @@ class _Joined:
             assert isinstance(content, Material)  # noqa: S101 - only such loops have a region
             materials[self.region[k]] = content
         palette = sorted({*materials, self.case.background}, key=lambda m: (m.permittivity, m.loss_tangent, m.name))
-        regions = [Region(tuple(walks), palette.index(m)) for walks, m in zip(loops, materials, strict=True)]
-        pieces = [Piece(p.curve, p.start, p.end, self._sides(k)) for k, p in enumerate(self.plane.pieces)]
+        pieces = [
+            Piece(p.curve, p.start, p.end, self._sides(k), self._strip(p)) for k, p in enumerate(self.plane.pieces)
+        ]
+        embedded = self._embedded(pieces)
+        regions = [
+            Region(tuple(walks), palette.index(m), embedded=tuple(embedded.get(k, ())))
+            for k, (walks, m) in enumerate(zip(loops, materials, strict=True))
+        ]
         points = self.plane.points
         if self.rim:
             points = self._add_far_region(pieces, regions, palette.index(self.case.background))
@@ -151,6 +174,17 @@ class _Joined:
             self.rim,
             self._far_wall(),
         )
+
+    def _embedded(self, pieces: list[Piece]) -> dict[int, list[int]]:
+        """Adds the inner pieces; returns their numbers by region."""
+        embedded: dict[int, list[int]] = {}
+        for p in self._renumbered[1][len(self.kept) :]:
+            loop = self.plane.innermost_around(p.curve.at(np.array(0.5)))
+            assert loop is not None  # noqa: S101 - a strip always lies within the domain
+            region = self.region[loop]
+            embedded.setdefault(region, []).append(len(pieces))
+            pieces.append(Piece(p.curve, p.start, p.end, (region, region), self._strip(p)))
+        return embedded
 
     def _sides(self, piece: int) -> tuple[int, int]:
         """What lies left and right; on the rim the near region comes first."""

@@ -79,7 +79,7 @@ def _choice(layout: Layout, point: int, pair: tuple[int, int]) -> int:
     """
     bends = [_heading(layout.pieces[k], point)[1] for k in pair]
     if bends[0] * bends[1] < 0:
-        dielectric = [k for k in pair if min(layout.pieces[k].sides) >= 0]
+        dielectric = [k for k in pair if layout.pieces[k].surface is None]
         return dielectric[0] if dielectric else pair[0]
     return pair[int(abs(bends[1]) > abs(bends[0]))]
 

@@ -11,9 +11,12 @@ from nightcap.geometry.curves import Floats, Ints, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import FAR_WALL, MAGNETIC_WALL, Layout, Piece
 from nightcap.geometry.mesh import Triangulation, ascending
+from nightcap.geometry.tips import is_tip, tip_fraction
 
 SHRINK = 0.4
 """Size of each layer relative to the one around it."""
+FINEST = 1e-11
+"""Least edge length at a corner relative to its coordinates, which have 16 digits."""
 
 
 def corner_sizes(layout: Layout, grading: Grading) -> dict[int, float]:
@@ -24,7 +27,7 @@ def corner_sizes(layout: Layout, grading: Grading) -> dict[int, float]:
             arms.setdefault(point, []).append((direction_and_bend(piece.curve, from_start)[0], piece))
     sizes = {}
     for point, meeting in arms.items():
-        fraction = _fraction(meeting, grading)
+        fraction = tip_fraction(layout, meeting, grading) if is_tip(layout, meeting) else _fraction(meeting, grading)
         if fraction is not None:
             sizes[point] = fraction * min(piece.curve.length for _, piece in meeting)
     return sizes
@@ -40,7 +43,8 @@ def with_layers(flat: Triangulation, spans: Floats, grading: Grading) -> tuple[T
         around = np.flatnonzero((flat.triangles == corner).any(axis=1))
         spokes = np.setdiff1d(flat.triangles[around], [corner])
         reach = np.hypot(*(flat.points[spokes] - flat.points[corner]).T).min()
-        layers = math.ceil(math.log(max(reach / size, 1.0)) / -math.log(SHRINK))
+        least = max(size, FINEST * float(np.abs(flat.points[[corner, *spokes]]).max()))
+        layers = math.ceil(math.log(max(reach / least, 1.0)) / -math.log(SHRINK))
         if layers:
             flat, spans = _layered(flat, spans, corner, around, spokes, layers)
     return flat, spans
@@ -112,7 +116,7 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
         return None
     if any(piece.wall for _, piece in meeting):
         return _fraction_at_mirror(meeting, grading)
-    on_conductor = any(min(piece.sides) < 0 for _, piece in meeting)
+    on_conductor = any(piece.surface is not None for _, piece in meeting)
     if on_conductor and _opens_wide(meeting):
         return grading.corner
     return grading.bend if len(angles) > 2 or not on_conductor else None
@@ -120,11 +124,13 @@ def _fraction(meeting: list[tuple[float, Piece]], grading: Grading) -> float | N
 
 def _opens_wide(meeting: list[tuple[float, Piece]]) -> bool:
     """Whether the dielectric around a point of a conductor's surface spans more than a half turn."""
-    surface = sorted(angle % math.tau for angle, piece in meeting if min(piece.sides) < 0)
+    surface = sorted(angle % math.tau for angle, piece in meeting if piece.surface is not None)
     if len(surface) != 2:
         return True
     between = surface[1] - surface[0]
-    others = [angle % math.tau for angle, piece in meeting if min(piece.sides) >= 0]
+    if any(piece.conductor is not None for _, piece in meeting):  # a strip has dielectric on both sides
+        return abs(between - math.pi) > 1e-6
+    others = [angle % math.tau for angle, piece in meeting if piece.surface is None]
     if others:
         inside = surface[0] < others[0] < surface[1]
         return (between if inside else math.tau - between) > math.pi + 1e-6

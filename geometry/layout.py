@@ -36,12 +36,20 @@ class Piece:
     sides: tuple[int, int]
     """What lies left and right: a region number, ``conductor_side(k)``, MAGNETIC_WALL or FAR_WALL.
     On the rim: the near region, the far one."""
+    conductor: int | None = None
+    """The conductor that the piece itself is, of no thickness; both its sides may be regions, even the same one."""
 
     @property
     def wall(self) -> int:
         """MAGNETIC_WALL or FAR_WALL if it lies on one, else 0."""
         side = max(self.sides)
         return side if side >= MAGNETIC_WALL else 0
+
+    @property
+    def surface(self) -> int | None:
+        """The conductor on whose surface the piece lies, or that it is."""
+        lowest = min(self.sides)
+        return self.conductor if lowest >= 0 else conductor_side(lowest)
 
 
 @dataclass(frozen=True)
@@ -55,6 +63,8 @@ class Region:
     """Index into Layout.materials."""
     far: bool = False
     """True for the inverted outside of the rim."""
+    embedded: tuple[int, ...] = ()
+    """Numbers of the pieces of thin strips inside it, which belong to no loop; they may end on one."""
 
 
 @dataclass(frozen=True)

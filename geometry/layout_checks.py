@@ -16,6 +16,7 @@ from nightcap.geometry.finding import Finding
 from nightcap.geometry.gaps import gaps_below, surfaces
 from nightcap.geometry.outside import what_lies_outside
 from nightcap.geometry.painting import Drawing
+from nightcap.geometry.thin_checks import strip_findings, vanished
 
 SMALLEST_GAP = 1e-6
 """Between two conductors, relative to the layout's size."""
@@ -30,6 +31,8 @@ def find_problems(
     """
     found = dict.fromkeys(what_lies_outside(case, drawing))
     found |= dict.fromkeys(_overlaps(case, drawing, _faces(drawing, plane, members)))
+    found |= dict.fromkeys(vanished(case, drawing, plane))
+    found |= dict.fromkeys(strip_findings(case, drawing, plane, members, (_boundary_name(case), _sticks_out(case))))
     overlapping = {finding.pair for finding in found}
     contacts = [finding for finding in _contacts(case, drawing, plane, members) if finding.pair not in overlapping]
     found |= dict.fromkeys(contacts)

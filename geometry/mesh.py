@@ -10,7 +10,7 @@ import skfem
 
 from nightcap.geometry.curves import Flags, Floats, Ints
 from nightcap.geometry.grading import Grading
-from nightcap.geometry.layout import Layout, conductor_side
+from nightcap.geometry.layout import Layout
 
 
 @dataclass(frozen=True, eq=False)
@@ -66,8 +66,8 @@ class Triangulation:
     @cached_property
     def edge_conductor(self) -> Ints:
         """(E,) the conductor on whose surface each edge lies, or -1."""
-        lowest = np.array([min(piece.sides) for piece in self.layout.pieces])
-        conductor = np.where(lowest < 0, conductor_side(lowest), -1)
+        surfaces = (piece.surface for piece in self.layout.pieces)
+        conductor = np.array([-1 if surface is None else surface for surface in surfaces])
         return np.append(conductor[self.curve_piece], -1)[self.edge_rank]
 
     @cached_property

@@ -23,7 +23,7 @@ def with_clear_seams(chains: Sequence[Outline], tolerance: float) -> list[Outlin
     Two curves that touch are within the tolerance, m, of each other some way to either side of the contact; a seam
     there would be taken for a second contact.
     """
-    circles = {k: chain[0] for k, chain in enumerate(chains) if _is_circle(chain)}
+    circles = {k: first for k, chain in enumerate(chains) if (first := _first_of_circle(chain))}
     if not circles:
         return list(chains)
     contacts = _Contacts([curve for chain in chains for curve in chain], tolerance)
@@ -39,14 +39,14 @@ def with_clear_seams(chains: Sequence[Outline], tolerance: float) -> list[Outlin
     return turned
 
 
-def _is_circle(chain: Outline) -> bool:
-    first = chain[0]
-    return (
-        len(chain) == 4
-        and isinstance(first, Arc)
-        and all(isinstance(c, Arc) and c.centre == first.centre and c.radius == first.radius for c in chain)
-        and math.isclose(sum(c.length for c in chain), math.tau * first.radius, rel_tol=1e-9)
-    )
+def _first_of_circle(chain: Outline) -> Arc | None:
+    """The first quarter of a chain that is a full circle, else None."""
+    arcs = [curve for curve in chain if isinstance(curve, Arc)]
+    if len(chain) != 4 or len(arcs) != 4:
+        return None
+    same = all(arc.centre == arcs[0].centre and arc.radius == arcs[0].radius for arc in arcs)
+    whole = math.isclose(abs(sum(arc.sweep for arc in arcs)), math.tau, rel_tol=1e-9)
+    return arcs[0] if same and whole else None
 
 
 def _offset(contacts: Floats, slack: float) -> float:

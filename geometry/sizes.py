@@ -10,6 +10,7 @@ from nightcap.geometry.corners import corner_sizes
 from nightcap.geometry.curves import SAME_DIRECTION, Floats, Ints, Segment, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
+from nightcap.geometry.tips import tips
 
 COARSE = 0.25
 """Edge length at a corner, as a fraction of the shortest piece there; finer layers are cut out of such triangles."""
@@ -19,6 +20,9 @@ GAP = 1.3
 """An edge beside a gap g along a curve of radius r is at most GAP sqrt((r + g) g)."""
 SPREAD = 0.5
 """And, where walls let fields spread far along straight edges, at most SPREAD (r + g)."""
+
+TIP_GAP = 0.5
+"""An edge at the end of a strip, as a fraction of the distance to the next piece."""
 
 
 def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
@@ -35,7 +39,7 @@ def divide_pieces(layout: Layout, grading: Grading) -> list[Floats]:
         cells = order[bounds[k] : bounds[k + 1]]
         load = np.concatenate([[0.0], np.cumsum(cell_load[cells])])
         ends = np.concatenate([t0[cells], [1.0]])
-        n = max(math.ceil(load[-1] - 0.2), 2 if k in twins else 1)
+        n = max(math.ceil(load[-1] - 0.2), 2 if k in twins or layout.pieces[k].conductor is not None else 1)
         divisions.append(np.interp(np.linspace(0.0, load[-1], n + 1), load, ends))
     return divisions
 
@@ -58,14 +62,24 @@ class _Sizes:
         curvature = np.abs([piece.curve.curvature for piece in pieces])
         self.radius = np.where(curvature > 0, 1 / np.maximum(curvature, 1e-300), np.inf)
         self.coarsest = np.where(np.isinf(self.radius), self.lengths / 2, grading.turn * self.radius)
-        at_corners = corner_sizes(layout, Grading(corner=COARSE, bend=COARSE))
+        at_corners = corner_sizes(layout, Grading(corner=COARSE, tip=1.0, bend=COARSE))
         self.sources = layout.points[list(at_corners)]
         self.source_size = np.array(list(at_corners.values()))
-        self.near = _close_pairs(layout, self.coarsest)
-        self.floor = grading.contact * np.where(np.isinf(self.radius), layout.size, self.radius)
         self.arcs = np.array([_arc_row(piece) for piece in pieces])
         self.spread = SPREAD if any(piece.wall for piece in pieces) else np.inf
         self.ends = np.array([(piece.curve.start, piece.curve.end) for piece in pieces])
+        self._shrink_at_tips(layout, list(at_corners))
+        self.near = _close_pairs(layout, self.coarsest)
+        self.floor = grading.contact * np.where(np.isinf(self.radius), layout.size, self.radius)
+
+    def _shrink_at_tips(self, layout: Layout, corners: list[int]) -> None:
+        """At the end of a strip edges are short also against the distance to the next piece."""
+        for point, incident in tips(layout).items():
+            if point in corners:
+                others = np.array([k for k in range(len(self.pieces)) if k not in incident], dtype=np.int64)
+                gaps = self._distance(np.broadcast_to(layout.points[point], (len(others), 2)), others)
+                least = COARSE * self.lengths[list(incident)].min()
+                self.source_size[corners.index(point)] = min(least, TIP_GAP * gaps.min(initial=np.inf))
 
     def points(self, owner: Ints, t: Floats) -> Floats:
         """(n, 2) points at parameters t (n,) of pieces owner (n,)."""

@@ -102,6 +102,9 @@ def _describe(gmsh: ModuleType, layout: Layout, points: Floats, along: list[Ints
             geo.addCurveLoop([tag for piece in walk for tag in _walked(lines, piece)], loop)
         geo.addPlaneSurface(list(range(first, loop + 1)), k)
     geo.synchronize()
+    for k, region in enumerate(layout.regions, start=1):
+        if region.embedded:
+            gmsh.model.mesh.embed(1, [tag for piece in region.embedded for tag in lines[piece]], 2, k)
     farthest = FARTHEST if layout.wall is None else 2 * layout.wall.reach / layout.size
     _grow_from_curves(gmsh, tag, len(layout.regions), farthest)
 

@@ -15,6 +15,7 @@ from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.mesh import Mesh, Triangulation, ascending
 from nightcap.geometry.sizes import divide_pieces
+from nightcap.geometry.slit import slit
 from nightcap.geometry.triangulate import triangulate
 
 ROUNDS = 12
@@ -28,8 +29,10 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
     divisions = with_even_cusps(layout, divide_pieces(layout, grading))
     for _ in range(ROUNDS):
         flat, spans = with_layers(*triangulate(layout, divisions), grading)
-        turns = _turns(flat, spans)
         straight = cusp_edges(flat)
+        flat, spans, rows = slit(flat, spans)
+        straight = straight[rows]
+        turns = _turns(flat, spans)
         flat = _without_blunt_corners(flat, np.where(straight, 0.0, turns))
         curved, valid = curved_triangles(flat, spans, bent=(turns > 0) & ~straight)
         lenses = Lenses.beside(flat, spans, straight & (turns > 0))

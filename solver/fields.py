@@ -30,6 +30,8 @@ class Sample:
     """(N, V), V."""
     flux: Floats
     """(N, V) flux function, C/m: its contours are field lines."""
+    place: Ints
+    """(V,) numbers that are the same for corners that are one point of the mesh: not for the two sides of a strip."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -70,6 +72,7 @@ class Fields:
             far=np.repeat(self.mesh.far, len(cells)),
             potential=fields[0].reshape(len(fields[0]), -1),
             flux=fields[1].reshape(len(fields[1]), -1) * VACUUM_PERMITTIVITY,
+            place=_place_numbers(self.mesh, subdivisions).reshape(-1),
         )
 
     def _nodal(self, edge_values: Floats) -> Floats:
@@ -83,6 +86,24 @@ class Fields:
         values, _ = polynomials.lagrange(curving.ORDER, lattice)
         places[self.mesh.curved.index] = np.einsum("nq,tnd->tqd", values, self.mesh.curved.nodes)
         return np.asarray(places)
+
+
+def _place_numbers(mesh: Mesh, n: int) -> Ints:
+    """(T, q) a number for each lattice point of each triangle, shared along common edges.
+
+    Edges run from the lower to the higher vertex in all triangles, so their inner points are counted alike.
+    """
+    weights = np.rint(_lattice(n)[0] * n).astype(np.int64)
+    barycentric = np.stack([n - weights.sum(axis=0), *weights])
+    first_edge, first_inner = len(mesh.points), len(mesh.points) + (n - 1) * len(mesh.edges)
+    numbers = first_inner + np.arange(len(mesh.triangles) * barycentric.shape[1]).reshape(len(mesh.triangles), -1)
+    for local, (a, b) in enumerate(polynomials.EDGES):
+        on = (barycentric[[a, b]].sum(axis=0) == n) & (barycentric[b] > 0) & (barycentric[b] < n)
+        along = first_edge + (n - 1) * mesh.triangle_edges[:, local, None]
+        numbers[:, on] = along + barycentric[b, on] - 1
+    for corner in range(3):
+        numbers[:, barycentric[corner] == n] = mesh.triangles[:, corner, None]
+    return numbers
 
 
 def _lattice(n: int) -> tuple[Floats, Ints]:

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from nightcap.geometry.case import Limits
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
-from nightcap.geometry.errors import LimitError
+from nightcap.geometry.errors import LimitError, MeshError
 from nightcap.geometry.grading import grading_for
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.valid import first_mesh
@@ -86,7 +86,13 @@ def solve(
         if reason:
             break
         start = time.perf_counter()
-        fields = solve_fields(step.mesh, step.order, METRIC_PART * accuracy, watch)
+        try:
+            fields = solve_fields(step.mesh, step.order, METRIC_PART * accuracy, watch)
+        except MeshError as error:
+            if fields is None:
+                raise
+            reason = str(error)
+            break
         reached = reduction.apply(fields.bracket).relative
         if reached <= accuracy:
             rounds.append(_round(fields, reached, "met", start))
@@ -95,8 +101,13 @@ def solve(
             reason = f"the polynomial edges of curves alone leave {fields.floor:.1e}"
             rounds.append(_round(fields, reached, "ended", start))
             break
-        with watch.on("mesh"):
-            step = next_step(fields, accuracy * fields.bracket.relative / reached)
+        try:
+            with watch.on("mesh"):
+                step = next_step(fields, accuracy * fields.bracket.relative / reached)
+        except MeshError as error:
+            reason = str(error)
+            rounds.append(_round(fields, reached, "ended", start))
+            break
         rounds.append(_round(fields, reached, step.action, start))
         if progress:
             progress(rounds[-1])

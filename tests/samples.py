@@ -2,6 +2,7 @@
 
 from nightcap.geometry.case import Case, Coating, Conductor, Dielectric, Material, OpenSpace, Shield
 from nightcap.geometry.shapes import Circle, Rectangle
+from nightcap.geometry.strip import Strip
 
 FOAM = Material(1.6, name="foam")
 SOLID = Material(2.3, name="solid")
@@ -40,3 +41,11 @@ def wire_on_board() -> Case:
     wire = Conductor("wire", Circle((0.0, 0.5), 0.5))
     board = Dielectric("board", Rectangle((0.0, -0.5), 6.0, 1.0), Material(4.4, name="board"))
     return Case("on-board", "", (wire,), Shield(Rectangle((0.0, 0.5), 6.0, 3.0)), "shield", (board,))
+
+
+def foil_and_wire() -> Case:
+    """A bent strip, partly on the edge of a film, and a wire, in a round shield."""
+    foil = Conductor("foil", Strip(((-0.6, -0.1), (-0.3, 0.1), (0.4, 0.1))))
+    wire = Conductor("wire", Circle((0.2, 0.5), 0.1))
+    film = Dielectric("film", Rectangle((0.0, 0.05), 0.8, 0.1), SOLID)
+    return Case("foil", "Foil and wire", (foil, wire), Shield(Circle((0.0, 0.0), 1.0)), "shield", (film,))

@@ -8,7 +8,7 @@ from itertools import pairwise
 
 from nightcap.geometry.curves import Arc, Curve, Point, Segment
 from nightcap.geometry.shapes.outline import Outline, Shape
-from nightcap.geometry.shapes.parallel import Grown
+from nightcap.geometry.shapes.parallel import Grown, meets_itself
 
 
 @dataclass(frozen=True)
@@ -21,10 +21,16 @@ class BentStrip:
     round_ends: bool = False
 
     def outline(self) -> Outline:
-        """Up the right side, around the end, down the other side."""
+        """Up the right side, around the end, down the other side.
+
+        Raises ValueError where joints are too tight, or the strip would meet itself.
+        """
         there, back = list(self.points), list(reversed(self.points))
         curves = [*self._side(there), *self._cap(there), *self._side(back), *self._cap(back)]
-        return tuple(curve for curve in curves if curve.length > 1e-12 * self.thickness)
+        outline = tuple(curve for curve in curves if curve.length > 1e-12 * self.thickness)
+        if len(self.points) > 2 and meets_itself(outline):
+            raise ValueError("would meet itself")
+        return outline
 
     def grown(self, thickness: float) -> Shape:
         return Grown(self, thickness)
@@ -44,7 +50,7 @@ class BentStrip:
                 continue
             back = half * math.tan(-turn / 2)
             if back >= min(math.dist(points[k - 1], at), math.dist(at, points[k + 1])):
-                raise ValueError("a joint is too tight for the thickness")
+                raise ValueError("has a joint too tight for its thickness")
             inner = _beside(_along(at, headings[k - 1], -back), headings[k - 1], half)
             curves.append(Segment(start, inner))
             start = inner

@@ -13,6 +13,7 @@ from nightcap.geometry.layout import Layout
 from nightcap.geometry.motion import Moved
 from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector
 from nightcap.geometry.slab import Slab
+from nightcap.geometry.strip import Strip
 from nightcap.geometry.symmetry import SymmetryLine
 from nightcap.geometry.twist import Twist
 from nightcap.lengths import length_text
@@ -144,6 +145,13 @@ def _(slab: Slab) -> str:
     if math.isinf(slab.high):
         return f"half space above y = {length_text(slab.low)}"
     return f"slab without end, from y = {length_text(slab.low)} to {length_text(slab.high)}"
+
+
+@describe.register
+def _(strip: Strip) -> str:
+    through = "" if len(strip.points) == 2 else f" through {len(strip.points)} points"
+    ends = f"from {_point(strip.points[0])} to {_point(strip.points[-1])}"
+    return f"strip of no thickness{through}, {length_text(strip.length)} long, {ends}"
 
 
 @describe.register

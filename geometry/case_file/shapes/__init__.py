@@ -6,7 +6,7 @@ from functools import cache
 from typing import Any
 
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
-from nightcap.geometry.case_file.schema import Entry, EntryType, checked
+from nightcap.geometry.case_file.schema import ConductorKeys, Entry, EntryType, checked
 from nightcap.geometry.case_file.shapes.bent_strips import BentStripKeys
 from nightcap.geometry.case_file.shapes.circles import CircleKeys, RingKeys
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys
@@ -14,6 +14,7 @@ from nightcap.geometry.case_file.shapes.polygons import PolygonKeys, RegularPoly
 from nightcap.geometry.case_file.shapes.rectangles import OvalKeys, RectangleKeys
 from nightcap.geometry.case_file.shapes.sectors import ArcStripKeys, SectorKeys
 from nightcap.geometry.case_file.shapes.slabs import SlabKeys
+from nightcap.geometry.case_file.shapes.strips import StripKeys
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.shapes import Shape
 
@@ -29,6 +30,7 @@ SHAPES: dict[str, type[ShapeKeys]] = {
     "trapezoid": TrapezoidKeys,
     "regular_polygon": RegularPolygonKeys,
     "slab": SlabKeys,
+    "strip": StripKeys,
 }
 """A new shape is one more class and one more line here."""
 
@@ -46,19 +48,8 @@ def shaped(
     own: type[EntryType], tree: Tree, path: str, problems: Problems, context: dict[str, Any]
 ) -> tuple[EntryType, Shape] | None:
     """An entry that has a shape besides keys of its own, or None after noting every mistake in it."""
-    words = _words_for(path)
-    if not isinstance(tree, dict):
-        problems.add(path, f"must be a mapping with the key 'shape' ({listed(words)}) and the keys of that shape")
-        return None
-    word = tree.get("shape")
-    if not isinstance(word, str) or word not in SHAPES:
-        if "shape" in tree:
-            problems.add(under(path, "shape"), one_of(word, words))
-        else:
-            problems.add(path, f"the key 'shape' is missing; allowed: {listed(words)}")
-        return None
-    if word not in words:
-        problems.add(under(path, "shape"), f"'{word}' is a shape for {ONLY_FOR[word]} only; allowed: {listed(words)}")
+    word = _word(own, tree, path, problems)
+    if word is None:
         return None
     entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
     if entry is None:
@@ -71,6 +62,25 @@ def shaped(
         problems.add(under(path, "corner_radius"), str(error))
         return None
     return entry, figure
+
+
+def _word(own: type[Entry], tree: Tree, path: str, problems: Problems) -> str | None:
+    """The shape that an entry names, or None after noting why it may not."""
+    words = _words_for(path)
+    word = tree.get("shape") if isinstance(tree, dict) else None
+    if not isinstance(tree, dict):
+        problems.add(path, f"must be a mapping with the key 'shape' ({listed(words)}) and the keys of that shape")
+    elif "shape" not in tree:
+        problems.add(path, f"the key 'shape' is missing; allowed: {listed(words)}")
+    elif not isinstance(word, str) or word not in SHAPES:
+        problems.add(under(path, "shape"), one_of(word, words))
+    elif word not in words:
+        problems.add(under(path, "shape"), f"'{word}' is a shape for {ONLY_FOR[word]} only; allowed: {listed(words)}")
+    elif SHAPES[word].is_thin and own is not ConductorKeys:
+        problems.add(under(path, "shape"), f"a {word} encloses nothing; only a conductor can be one")
+    else:
+        return word
+    return None
 
 
 @cache

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import ClassVar
+
 from pydantic import Field
 
 from nightcap.geometry.case_file.quantities import Degrees, PointOf
@@ -12,6 +14,8 @@ from nightcap.geometry.shapes import Shape
 class ShapeKeys(Entry):
     """What every shape has."""
 
+    is_thin: ClassVar[bool] = False
+    """Whether the shape encloses nothing."""
     shape: Text = Field(description="Word for the shape.")
 
     def figure(self) -> Shape:

@@ -42,11 +42,18 @@ class FluxSheet:
     rim: Rim | None
 
 
-def flux_sheet(corners: Floats, flux: Floats, far: Flags, rim: Rim | None, size: float) -> FluxSheet:
-    """Finds which triangles touch, also across the rim. size : of the layout, m; corners agree to 1e-9 of it."""
+def flux_sheet(
+    corners: Floats, flux: Floats, far: Flags, rim: Rim | None, size: float, places: Ints | None = None
+) -> FluxSheet:
+    """Finds which triangles touch, also across the rim.
+
+    size : of the layout, m; corners agree to 1e-9 of it. places : (T, 3) numbers that are the same for corners that are
+    one point; without them corners are one where they agree, so that the two sides of a slit would grow together.
+    """
     grid = np.rint(_drawn_in(corners.reshape(-1, 2), size) / (1e-9 * size)).astype(np.int64)
     sheet = np.repeat(far, 3).astype(np.int64)
-    labels = _labels(grid[:, 0], grid[:, 1], sheet).reshape(-1, 3)
+    columns = (grid[:, 0], grid[:, 1]) if places is None else (places.reshape(-1),)
+    labels = _labels(*columns, sheet).reshape(-1, 3)
     neighbour = _partners(labels, np.ones(labels.shape, dtype=bool))
     if rim is not None:
         centre, radius = rim

@@ -75,7 +75,9 @@ def clipped(loop: Floats, low: Floats, high: Floats) -> Floats:
 
 
 def conductor_steps(layout: Layout, conductor: int) -> Iterator[int]:
-    """Signed pieces, as in Region.loops, that have the conductor on their left and the near sheet on the other side."""
+    """Signed pieces, as in Region.loops, that have the conductor on their left and the near sheet on the other side;
+    not those of thin strips.
+    """
     side = conductor_side(conductor)
     for k, piece in enumerate(layout.pieces):
         left, right = piece.sides
@@ -89,8 +91,13 @@ def interface_lines(layout: Layout) -> list[Floats]:
     return [
         points_along(piece.curve)
         for piece in layout.pieces
-        if min(piece.sides) >= 0 and not piece.wall and not any(layout.regions[side].far for side in piece.sides)
+        if piece.surface is None and not piece.wall and not any(layout.regions[side].far for side in piece.sides)
     ]
+
+
+def strip_lines(layout: Layout, conductor: int) -> list[Floats]:
+    """The pieces of a conductor that have no thickness."""
+    return [points_along(piece.curve) for piece in layout.pieces if piece.conductor == conductor]
 
 
 def surface_lines(layout: Layout, conductor: int) -> list[Floats]:

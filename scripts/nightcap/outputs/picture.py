@@ -17,7 +17,14 @@ from nightcap.lengths import LengthUnit, fitting_unit
 from nightcap.outputs.drawing import Drawing, View, view_of
 from nightcap.outputs.field_lines import field_lines, flux_sheet, unfolded
 from nightcap.outputs.labels import Labels, literal
-from nightcap.outputs.outlines import clipped, conductor_loops, interface_lines, region_loops, surface_lines
+from nightcap.outputs.outlines import (
+    clipped,
+    conductor_loops,
+    interface_lines,
+    region_loops,
+    strip_lines,
+    surface_lines,
+)
 from nightcap.result import Result
 from nightcap.whole_file import write_whole
 
@@ -33,6 +40,8 @@ LEVELS = np.arange(1, 10) / 10
 TRIANGLES = 30_000
 """About so many are sampled, which makes lines smooth at this size."""
 METAL, EDGE = "0.62", "0.15"
+STRIP = 2.0
+"""Width of the line that stands for a conductor of no thickness, points."""
 HUE = "#0072b2"
 """One blue, for equipotentials: apart from black in greyscale and for every kind of colour vision."""
 STYLES = (("1.0", ""), ("0.93", "...."), ("0.87", "////"), ("0.95", "xxxx"), ("0.81", "||||"), ("0.90", "\\\\\\\\"))
@@ -154,7 +163,12 @@ def _fields(axes: Axes, drawing: Drawing, view: View) -> None:
     corners = sample.points[sample.triangles]
     potential = sample.potential[0][sample.triangles]
     sheet = flux_sheet(
-        corners.copy(), sample.flux[0][sample.triangles], sample.far, drawing.layout.rim, drawing.layout.size
+        corners.copy(),
+        sample.flux[0][sample.triangles],
+        sample.far,
+        drawing.layout.rim,
+        drawing.layout.size,
+        sample.place[sample.triangles],
     )
     at_one_volt = potential > 1.0 - 1e-6
     surface = (at_one_volt & np.roll(at_one_volt, -1, axis=1)).reshape(-1) & (sheet.neighbour < 0)
@@ -196,9 +210,13 @@ def _conductors(axes: Axes, drawing: Drawing, view: View) -> None:
     for k, name in enumerate(layout.conductors):
         if name in drawn:
             loops = conductor_loops(layout, k, drawing.case.symmetry)
-            axes.add_patch(filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
-            axes.add_patch(filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
-            _name(labels, name, np.concatenate(loops))
+            strips = strip_lines(layout, k)
+            if loops:
+                axes.add_patch(filled(loops, facecolor=METAL, edgecolor="0.45", hatch="//////", linewidth=0, zorder=5))
+                axes.add_patch(filled(loops, fill=False, edgecolor=EDGE, linewidth=0.9, zorder=6))
+            for line in strips:
+                axes.plot(*line.T, color=EDGE, linewidth=STRIP, solid_capstyle="butt", zorder=6)
+            _name(labels, name, np.concatenate([*loops, *strips]))
         else:
             for line in _outer_surface(drawing, k, view):
                 axes.plot(*line.T, color=METAL, linewidth=9, solid_capstyle="round", zorder=0.5)

@@ -3,6 +3,7 @@ from stand_ins import open_pair, screened_pair
 from nightcap.description import describe, description
 from nightcap.geometry.case import GroundPlane
 from nightcap.geometry.shapes import Polygon, Rectangle
+from nightcap.geometry.strip import Strip
 from nightcap.lengths import length_text
 
 
@@ -26,6 +27,9 @@ def test_shapes_in_words() -> None:
         describe(Polygon(((0.0, 0.0), (1.0, 0.0), (0.0, 2.0))))
         == "polygon of 3 points, from (0 mm, 0 mm) to (1 m, 2 m)"
     )
+    bent = Strip(((0.0, 0.0), (3e-3, 0.0), (3e-3, 4e-3)))
+    assert describe(bent) == "strip of no thickness through 3 points, 7 mm long, from (0 mm, 0 mm) to (3 mm, 4 mm)"
+    assert describe(Strip(bent.points[:2])) == "strip of no thickness, 3 mm long, from (0 mm, 0 mm) to (3 mm, 0 mm)"
     assert describe(GroundPlane(0.0)) == "ground plane 'plane' at y = 0 mm"
 
 

@@ -1,8 +1,10 @@
 import numpy as np
 import pytest
 from numpy.testing import assert_allclose
+from samples import foil_and_wire
 from stand_ins import open_pair, screened_pair
 
+from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.curves import Floats
 from nightcap.outputs.field_lines import field_lines, flux_sheet, unfolded
 from nightcap.solver.solve import solve
@@ -73,3 +75,29 @@ def test_lines_in_a_screen_start_on_the_driven_wire_only() -> None:
     surface = (charged & np.roll(charged, -1, axis=1)).reshape(-1) & (sheet.neighbour < 0)
     starts = np.array([line[0] for line in field_lines(sheet, surface, 20)])
     assert_allclose(np.hypot(starts[:, 0] + 0.6e-3, starts[:, 1]), 0.25e-3, rtol=1e-2)
+
+
+def test_lines_start_on_both_sides_of_a_strip_and_none_passes_through() -> None:
+    """On which side a line starts shows in where its second point is."""
+    layout = build_layout(foil_and_wire())
+    sample = solve(layout, 1e-4).fields.sample(6)
+    corners = sample.points[sample.triangles]
+    flux, places = sample.flux[1][sample.triangles], sample.place[sample.triangles]  # the wire is charged
+    sheet = flux_sheet(corners, flux, sample.far, layout.rim, layout.size, places)
+    charged = sample.potential[1][sample.triangles] > 1 - 1e-6
+    surface = (charged & np.roll(charged, -1, axis=1)).reshape(-1) & (sheet.neighbour < 0)
+    for line in field_lines(sheet, surface, 40):
+        assert_allclose(np.hypot(*(line[0] - [0.2, 0.5])), 0.1, rtol=1e-2)
+        (x0, x1), (y0, y1) = (np.stack([part[:-1], part[1:]]) for part in (line[:, 0], line[:, 1] - 0.1))
+        crossing = (np.minimum(y0, y1) < -1e-9) & (np.maximum(y0, y1) > 1e-9)
+        assert not (crossing & (np.minimum(x0, x1) > -0.3) & (np.maximum(x0, x1) < 0.4)).any()
+    grown_together = flux_sheet(corners, flux, sample.far, layout.rim, layout.size)
+    assert (grown_together.neighbour < 0).sum() < (sheet.neighbour < 0).sum()
+
+    flux, charged = sample.flux[0][sample.triangles], sample.potential[0][sample.triangles] > 1 - 1e-6
+    sheet = flux_sheet(corners, flux, sample.far, layout.rim, layout.size, places)
+    surface = (charged & np.roll(charged, -1, axis=1)).reshape(-1) & (sheet.neighbour < 0)
+    lines = field_lines(sheet, surface, 40)
+    level = [line for line in lines if abs(line[0, 1] - 0.1) < 1e-9]
+    upwards = [line[1, 1] > line[0, 1] for line in level]
+    assert 5 < sum(upwards) < len(level) - 5
