@@ -20,10 +20,9 @@ from nightcap.geometry.painting import Drawing, paint
 from nightcap.geometry.seams import with_clear_seams
 from nightcap.geometry.shapes import chains
 from nightcap.geometry.symmetry import SymmetryLine
+from nightcap.geometry.voids import Content, with_filled_voids
 
 OUTSIDE = "outside"
-Content = int | Material | str
-"""What fills a face: the number of a conductor, a material, or what lies outside the domain."""
 
 
 def build_layout(case: Case) -> Layout:
@@ -36,7 +35,7 @@ def build_layout(case: Case) -> Layout:
     problems = find_problems(case, drawing, plane, members)
     if problems:
         raise CaseError(problems)
-    contents = [_content(case, drawing, inside) for inside in members]
+    contents = with_filled_voids(case, plane, [_content(case, drawing, inside) for inside in members])
     return _Joined(case, drawing, plane, contents).layout()
 
 

@@ -120,6 +120,8 @@ def nearest_on(curve: Curve, x: Floats) -> Floats:
     away = x - np.array(curve.centre)
     turned = np.sign(curve.sweep) * (np.arctan2(away[:, 1], away[:, 0]) - curve.start_angle)
     beside = np.mod(turned, 2 * np.pi) <= abs(curve.sweep)
-    on_circle = np.array(curve.centre) + curve.radius * away / np.maximum(np.hypot(*away.T), 1e-300)[:, None]
+    distance = np.hypot(*away.T)[:, None]
+    outward = np.where(distance > 0, away / np.maximum(distance, 1e-300), curve.tangent(np.array(0.5)))
+    on_circle = np.array(curve.centre) + curve.radius * outward
     nearer_end = np.where((np.hypot(*(x - start).T) < np.hypot(*(x - end).T))[:, None], start, end)
     return np.asarray(np.where(beside[:, None], on_circle, nearer_end))

@@ -43,7 +43,7 @@ class Piece:
     def wall(self) -> int:
         """MAGNETIC_WALL or FAR_WALL if it lies on one, else 0."""
         side = max(self.sides)
-        return side if side >= MAGNETIC_WALL else 0
+        return side if side >= MAGNETIC_WALL and self.conductor is None else 0
 
     @property
     def surface(self) -> int | None:

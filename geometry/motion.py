@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass, replace
 
 from nightcap.geometry.curves import Arc, Curve, Point, Segment
-from nightcap.geometry.shapes import Circle, Outline, Polygon, Rectangle, Shape
+from nightcap.geometry.shapes import Circle, Outline, Polygon, Rectangle, Shape, Union
 
 
 @dataclass(frozen=True)
@@ -57,6 +57,8 @@ class Motion:
             return replace(shape, centre=self.point(shape.centre), angle=angle)
         if isinstance(shape, Polygon):
             return replace(shape, points=tuple(self.point(at) for at in shape.points))
+        if isinstance(shape, Union):
+            return replace(shape, parts=tuple(self.shape(part) for part in shape.parts))
         return Moved(shape, self)
 
 

@@ -9,7 +9,7 @@ import numpy as np
 from nightcap.geometry.case import Case, Material, Shield
 from nightcap.geometry.curves import Arc, Floats, Point, Segment
 from nightcap.geometry.domain import Domain, shielded, unbounded
-from nightcap.geometry.shapes import Outline
+from nightcap.geometry.shapes import Outline, parts_of
 from nightcap.geometry.slab import Slab
 
 TOLERANCE = 1e-9
@@ -71,17 +71,21 @@ def paint(case: Case) -> Drawing:
 
 
 def _painted_conductors(case: Case) -> list[Drawn]:
-    """Coatings from the outside in, one conductor after the other; then the conductors."""
+    """Coatings from the outside in, one conductor after the other; then the conductors. Unions part by part."""
     drawn: list[Drawn] = []
     for number, conductor in enumerate(case.conductors):
         thickness = 0.0
-        coats = []
+        coats: list[Drawn] = []
         for k, coating in enumerate(conductor.coatings):
             thickness += coating.thickness
-            outline = conductor.shape.grown(thickness).outline()
-            coats.append(Drawn(outline, f"conductors.{conductor.name}.coatings[{k}]", number, coating.material))
-        drawn += reversed(coats)
-    return drawn + [Drawn(c.shape.outline(), f"conductors.{c.name}", k) for k, c in enumerate(case.conductors)]
+            key = f"conductors.{conductor.name}.coatings[{k}]"
+            layer = parts_of(conductor.shape.grown(thickness))
+            coats = [*(Drawn(part.outline(), key, number, coating.material) for part in layer), *coats]
+        drawn += coats
+    for number, conductor in enumerate(case.conductors):
+        key = f"conductors.{conductor.name}"
+        drawn += [Drawn(part.outline(), key, number) for part in parts_of(conductor.shape)]
+    return drawn
 
 
 def _domain(case: Case, outlines: list[Outline]) -> Domain:

@@ -13,7 +13,7 @@ from nightcap.geometry.mesh import Triangulation, ascending
 
 
 def slit(flat: Triangulation, spans: Floats) -> tuple[Triangulation, Floats, Ints]:
-    """Cuts a triangulation open along its strips.
+    """Cuts a triangulation open along its strips, and where surfaces of one conductor touch in a point.
 
     Around each vertex of a strip the triangles between two of its edges form a sector. The widest keeps the vertex,
     every other gets a copy; around a free end there is only one. From then on a strip is a boundary like any other.
@@ -21,9 +21,10 @@ def slit(flat: Triangulation, spans: Floats) -> tuple[Triangulation, Floats, Int
     and the row (B,) of the curve edge that each was before.
     """
     on_strip = np.array([piece.conductor is not None for piece in flat.layout.pieces])[flat.curve_piece]
-    if not on_strip.any():
+    pinched = _pinched(flat)
+    if not (on_strip.any() or pinched.any()):
         return flat, spans, np.arange(len(spans))
-    sectors = _Sectors.of(flat, on_strip)
+    sectors = _Sectors.of(flat, on_strip, pinched)
     numbers, points = sectors.vertices(flat)
     edges, rows = _curve_edges(flat, numbers, on_strip)
     turned = edges[:, 0] > edges[:, 1]
@@ -52,9 +53,9 @@ class _Sectors:
     """(n,)"""
 
     @classmethod
-    def of(cls, flat: Triangulation, on_strip: Flags) -> _Sectors:
+    def of(cls, flat: Triangulation, on_strip: Flags, pinched: Flags) -> _Sectors:
         """Two triangles at a vertex are joined by the edge from there that they share, unless it lies on a strip."""
-        split = np.zeros(len(flat.points), dtype=bool)
+        split = pinched.copy()
         split[flat.curve_edges[on_strip]] = True
         triangle, corner = np.nonzero(split[flat.triangles])
         number = np.full(flat.triangles.shape, -1, dtype=np.int64)
@@ -81,6 +82,12 @@ class _Sectors:
         numbers = flat.triangles.copy()
         numbers[self.triangle, self.corner] = of_sector[self.sector]
         return numbers, points
+
+
+def _pinched(flat: Triangulation) -> Flags:
+    """(V,) True for the vertices where more than two edges of a surface meet: where parts of a conductor touch."""
+    outer = (flat.edge_triangles < 0).any(axis=1) & (flat.edge_conductor >= 0)
+    return np.asarray(np.bincount(flat.edges[outer].ravel(), minlength=len(flat.points)) > 2)
 
 
 def _angles(flat: Triangulation, triangle: Ints, corner: Ints) -> Floats:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from typing import Annotated, Any, TypeVar
+from typing import Annotated, Any, TypeVar, get_args
 
 from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, ValidationInfo
 
@@ -191,18 +191,38 @@ def checked(
 
 
 def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -> None:
-    place = path
+    place, above = path, path
     for key in detail["loc"]:
-        place = under(place, key)
+        place, above = under(place, key), place
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
-        known = words_of(model)
+        known = words_of(_nested(model, detail["loc"][:-1]))
         problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
     elif detail["type"] == FOLLOWS:
         return
     elif detail["type"] == "missing":
-        problems.add(path, f"the key '{name}' is missing")
+        problems.add(above, f"the key '{name}' is missing")
     elif detail["type"] == "value_error":
         problems.add(place, str(detail["ctx"]["error"]))
+    elif detail["type"] in SHAPES_OF_YAML:
+        problems.add(place, SHAPES_OF_YAML[detail["type"]])
     else:
         problems.add(place, str(detail["msg"]))
+
+
+SHAPES_OF_YAML = {
+    "model_type": "must be a mapping of keys to values",
+    "tuple_type": "must be a list",
+    "list_type": "must be a list",
+}
+
+
+def _nested(model: type[Entry], loc: tuple[str | int, ...]) -> type[Entry]:
+    """The model of an entry below another, by its keys and numbers."""
+    for key in loc:
+        if isinstance(key, int):
+            continue
+        field = next(f for name, f in model.model_fields.items() if key in (name, f.alias))
+        inner = [kind for kind in (field.annotation, *get_args(field.annotation)) if isinstance(kind, type)]
+        model = next((kind for kind in inner if issubclass(kind, Entry)), model)
+    return model

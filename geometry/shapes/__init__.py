@@ -10,6 +10,7 @@ from nightcap.geometry.shapes.parallel import Grown
 from nightcap.geometry.shapes.polygon import Polygon
 from nightcap.geometry.shapes.rectangle import Rectangle
 from nightcap.geometry.shapes.sector import Sector
+from nightcap.geometry.shapes.union import Strands, Union, parts_of
 
 __all__ = [
     "BentStrip",
@@ -22,6 +23,9 @@ __all__ = [
     "Ring",
     "Sector",
     "Shape",
+    "Strands",
+    "Union",
     "chains",
+    "parts_of",
     "signed_area",
 ]

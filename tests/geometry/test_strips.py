@@ -191,7 +191,7 @@ def test_coats_are_round_about_ends_and_outer_sides() -> None:
     with pytest.raises(ValueError, match="meet itself"):
         Strip(((0.0, 0.0), (1.0, 0.0), (1.0, 0.15), (0.0, 0.15))).grown(radius).outline()
     with pytest.raises(ValueError, match="meet itself"):
-        Strip(((0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.6, -1.0))).grown(radius).outline()
+        Strip(((0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.3, 1.0), (0.3, 0.15))).grown(radius).outline()
 
 
 BASE = """\

@@ -15,8 +15,9 @@ from nightcap.geometry.case_file.shapes.rectangles import OvalKeys, RectangleKey
 from nightcap.geometry.case_file.shapes.sectors import ArcStripKeys, SectorKeys
 from nightcap.geometry.case_file.shapes.slabs import SlabKeys
 from nightcap.geometry.case_file.shapes.strips import StripKeys
+from nightcap.geometry.case_file.shapes.unions import LayeredStrandsKeys, StrandsKeys, UnionKeys
 from nightcap.geometry.case_file.yaml_tree import Tree
-from nightcap.geometry.shapes import Shape
+from nightcap.geometry.shapes import Shape, Union
 
 SHAPES: dict[str, type[ShapeKeys]] = {
     "circle": CircleKeys,
@@ -31,17 +32,22 @@ SHAPES: dict[str, type[ShapeKeys]] = {
     "regular_polygon": RegularPolygonKeys,
     "slab": SlabKeys,
     "strip": StripKeys,
+    "strands": StrandsKeys,
+    "layered_strands": LayeredStrandsKeys,
+    "union": UnionKeys,
 }
 """A new shape is one more class and one more line here."""
 
 
-ONLY_FOR = {"slab": "dielectrics"}
+MOST_PARTS = 500
+ONLY_FOR = {"slab": "dielectrics", "union": "conductors", "strands": "conductors", "layered_strands": "conductors"}
 """The one group of entries that a shape is for."""
 
 
 def _words_for(path: str) -> list[str]:
     """The shapes that an entry may have."""
-    return [word for word in SHAPES if path.startswith(ONLY_FOR.get(word, ""))]
+    group = path.partition(".")[0]
+    return [word for word in SHAPES if group in (ONLY_FOR.get(word, group), "constructions")]
 
 
 def shaped(
@@ -54,6 +60,9 @@ def shaped(
     entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
     if entry is None:
         return None
+    if SHAPES[word].has_parts:
+        parts = _parts(entry.parts, under(path, "parts"), problems, context)
+        return (entry, Union(parts)) if parts else None
     figure: Shape = entry.figure()
     try:
         if getattr(entry, "corner_radius", 0.0):
@@ -62,6 +71,16 @@ def shaped(
         problems.add(under(path, "corner_radius"), str(error))
         return None
     return entry, figure
+
+
+def _parts(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> tuple[Shape, ...]:
+    """The parts of a union; none after noting every mistake in them."""
+    if not isinstance(tree, list) or not 2 <= len(tree) <= MOST_PARTS:
+        problems.add(path, f"must be a list of 2 to {MOST_PARTS} shapes")
+        return ()
+    read = [shaped(Entry, part, under(path, k), problems, context) for k, part in enumerate(tree)]
+    parts = [part[1] for part in read if part]
+    return tuple(parts) if len(parts) == len(tree) else ()
 
 
 def _word(own: type[Entry], tree: Tree, path: str, problems: Problems) -> str | None:

@@ -16,6 +16,8 @@ class ShapeKeys(Entry):
 
     is_thin: ClassVar[bool] = False
     """Whether the shape encloses nothing."""
+    has_parts: ClassVar[bool] = False
+    """Whether the shape is made of others."""
     shape: Text = Field(description="Word for the shape.")
 
     def figure(self) -> Shape:
