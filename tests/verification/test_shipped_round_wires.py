@@ -5,18 +5,30 @@ The demo cases expect no published value, so this is what holds their numbers ag
 
 from __future__ import annotations
 
+import math
 from pathlib import Path
 
 import numpy as np
 import pytest
 from judging import assert_encloses, relative
-from multipoles import InOpenSpace, InShield, OverPlane, Surroundings, Wire, capacitance
+from multipoles import (
+    InOpenSpace,
+    InShield,
+    OverGroundedSlab,
+    OverHalfSpace,
+    OverPlane,
+    OverSlab,
+    Surroundings,
+    Wire,
+    capacitance,
+)
 
 from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.case import Case, GroundPlane, OpenSpace, Shield
 from nightcap.geometry.case_file import read_case, read_variants
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.shapes import Circle
+from nightcap.geometry.slab import Slab
 from nightcap.solver.solve import solve
 
 CASES = Path(__file__).parents[2] / "cases"
@@ -26,7 +38,9 @@ LEAST_NUMBER = 25
 
 def wires(case: Case) -> tuple[Wire, ...] | None:
     """The wires, the reference last in open space, in units of the first one's radius; None if the case has more."""
-    if case.dielectrics or not all(isinstance(c.shape, Circle) for c in case.conductors):
+    if case.symmetry or not all(isinstance(c.shape, Circle) for c in case.conductors):
+        return None
+    if case.dielectrics and slab_below(case) is None:
         return None
     unit, sunk = unit_and_origin(case)
     found = []
@@ -35,7 +49,17 @@ def wires(case: Case) -> tuple[Wire, ...] | None:
         coats = tuple((coat.thickness / unit, coat.material.permittivity) for coat in conductor.coatings)
         centre = (complex(*conductor.shape.centre) - sunk) / unit
         found.append(Wire(centre, conductor.shape.radius / unit, coats))
+    if case.dielectrics and any(wire.centre.imag < wire.outside * (1 - 1e-9) for wire in found):
+        return None  # it reaches into the slab
     return None if are_fused(found) else tuple(found)
+
+
+def slab_below(case: Case) -> Slab | None:
+    """The one slab that is the only dielectric, below all wires."""
+    shapes = [d.shape for d in case.dielectrics]
+    if len(shapes) != 1 or not isinstance(shapes[0], Slab) or math.isinf(shapes[0].high):
+        return None
+    return shapes[0]
 
 
 def are_fused(found: list[Wire]) -> bool:
@@ -48,6 +72,8 @@ def unit_and_origin(case: Case) -> tuple[float, complex]:
     """m, and the point that becomes the origin."""
     first = case.conductors[0].shape
     assert isinstance(first, Circle)
+    if slab := slab_below(case):
+        return first.radius, 1j * slab.high
     if isinstance(case.boundary, GroundPlane):
         return first.radius, 1j * case.boundary.at
     if isinstance(case.boundary, Shield) and isinstance(case.boundary.shape, Circle):
@@ -57,6 +83,8 @@ def unit_and_origin(case: Case) -> tuple[float, complex]:
 
 def surroundings(case: Case) -> Surroundings | None:
     """The boundary, where the expansion knows it and it is the reference."""
+    if slab := slab_below(case):
+        return over_slab(case, slab)
     if isinstance(case.boundary, OpenSpace):
         return InOpenSpace()
     if case.reference != case.boundary.name:
@@ -65,6 +93,17 @@ def surroundings(case: Case) -> Surroundings | None:
         return OverPlane()
     shape = case.boundary.shape
     return InShield(shape.radius / unit_and_origin(case)[0]) if isinstance(shape, Circle) else None
+
+
+def over_slab(case: Case, slab: Slab) -> Surroundings | None:
+    unit, _ = unit_and_origin(case)
+    permittivity = case.dielectrics[0].material.permittivity
+    if isinstance(case.boundary, GroundPlane):
+        return OverGroundedSlab((slab.high - case.boundary.at) / unit, permittivity)
+    if not isinstance(case.boundary, OpenSpace):
+        return None
+    thickness = (slab.high - slab.low) / unit
+    return OverHalfSpace(permittivity) if math.isinf(thickness) else OverSlab(thickness, permittivity)
 
 
 def rows(case: Case) -> list[str]:
@@ -101,9 +140,15 @@ SUITABLE = suitable()
 
 def test_enough_cases_are_suitable() -> None:
     assert len(SUITABLE) >= LEAST_NUMBER
-    assert {"drain-wire", "sensor-bundle", "wires-over-plane", "eccentric-core", "pair-tolerances"} <= {
-        path.stem for path in SUITABLE
-    }
+    assert {
+        "drain-wire",
+        "sensor-bundle",
+        "wires-over-plane",
+        "eccentric-core",
+        "pair-tolerances",
+        "cable-on-sand",
+        "wires-on-planks",
+    } <= {path.stem for path in SUITABLE}
 
 
 @pytest.mark.parametrize("path", SUITABLE, ids=lambda path: path.relative_to(CASES).with_suffix("").as_posix())
