@@ -59,10 +59,9 @@ def _cusps(layout: Layout) -> list[tuple[int, tuple[int, int]]]:
             arms.setdefault(point, []).append((*_heading(piece, point), k))
     found = []
     for point, leaving in arms.items():
-        if len(leaving) < 3:
-            continue
         leaving.sort()
-        for (angle, _, one), (other_angle, _, two) in zip(leaving, leaving[1:] + leaving[:1], strict=True):
+        following = leaving[1:] + (leaving[:1] if len(leaving) > 2 else [])
+        for (angle, _, one), (other_angle, _, two) in zip(leaving, following, strict=False):
             if abs(math.remainder(other_angle - angle, math.tau)) < SAME_DIRECTION:
                 found.append((point, (one, two)))
     return found

@@ -11,7 +11,7 @@ from nightcap.geometry.case import Case, Coating, GroundPlane, Limits, Material,
 from nightcap.geometry.curves import Point
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.motion import Moved
-from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector
+from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector, Strands, Union
 from nightcap.geometry.slab import Slab
 from nightcap.geometry.strip import Strip
 from nightcap.geometry.symmetry import SymmetryLine
@@ -108,6 +108,18 @@ def _(strip: LappedStrip) -> str:
 def _(strip: BentStrip) -> str:
     ends = f"from {_point(strip.points[0])} to {_point(strip.points[-1])}"
     return f"bent strip through {len(strip.points)} points, {ends}, thickness {length_text(strip.thickness)}"
+
+
+@describe.register
+def _(strands: Strands) -> str:
+    sizes = " and ".join(length_text(2 * radius) for radius in sorted({circle.radius for circle in strands.circles}))
+    overall = length_text(2 * strands.overall_radius)
+    return f"{len(strands.circles)} strands of {sizes}, {overall} over all, at {_point(strands.circles[0].centre)}"
+
+
+@describe.register
+def _(union: Union) -> str:
+    return f"union of {'; '.join(describe(part) for part in union.parts)}"
 
 
 @describe.register

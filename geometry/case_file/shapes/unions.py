@@ -28,12 +28,15 @@ def _count(value: object, info: ValidationInfo) -> int:
 
 
 class StrandsKeys(TurnedKeys):
-    """Equal round wires in hexagonal layers that touch each other: one conductor."""
+    """Equal round wires in whole layers about the middle one: one conductor."""
 
     count: Annotated[int, BeforeValidator(_count)] = Field(description="Number of strands: 7, 19, 37 or 61.")
     strand_diameter: PositiveLength | None = Field(None, description="Diameter of one strand.")
     overall_diameter: PositiveLength | None = Field(None, description="Diameter over all strands.")
     awg: Gauge | None = Field(None, description="Gauge of one strand, ASTM B258.")
+    lay: Literal["concentric", "hexagonal"] = Field(
+        "concentric", description="concentric: each layer on a circle; hexagonal: closest packing."
+    )
     form: Literal["true", "effective"] = Field(
         "true", description="true: every strand; effective: one round wire of the same capacitance."
     )
@@ -61,7 +64,12 @@ class StrandsKeys(TurnedKeys):
         if self.form == "effective":
             factor = self.factor or EFFECTIVE[self.count]
             return Circle(self.at, factor * WHOLE_SHELLS[self.count] * d / 2)
-        strands = Strands(tuple(Circle(site, d / 2) for site in hexagonal_sites(self.count, d)))
+        if self.lay == "hexagonal":
+            sites = hexagonal_sites(self.count, d)
+        else:
+            shells = (WHOLE_SHELLS[self.count] + 1) // 2
+            sites = [site for site, _ in layered_sites(d, [(6 * shell, d) for shell in range(1, shells)])]
+        strands = Strands(tuple(Circle(site, d / 2) for site in sites))
         return Motion(self.at, math.radians(self.rotate)).shape(strands)
 
 
