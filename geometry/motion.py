@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass, replace
 
 from nightcap.geometry.curves import Arc, Curve, Point, Segment
-from nightcap.geometry.shapes import Circle, Outline, Polygon, Rectangle, Shape, Union
+from nightcap.geometry.shapes import Circle, Outline, Polygon, Rectangle, Ring, Shape, Union
 
 
 @dataclass(frozen=True)
@@ -50,7 +50,7 @@ class Motion:
         """Where a figure goes."""
         if self == Motion():
             return shape
-        if isinstance(shape, Circle):
+        if isinstance(shape, Circle | Ring):
             return replace(shape, centre=self.point(shape.centre))
         if isinstance(shape, Rectangle):
             angle = self.angle + (-shape.angle if self.mirrored else shape.angle)

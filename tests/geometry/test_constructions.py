@@ -152,6 +152,37 @@ def test_a_copy_of_one_conductor_takes_the_plain_name() -> None:
     assert [conductor.name for conductor in case.conductors] == ["a", "b.2", "b.3"]
 
 
+def test_screen_with_drain_wire_is_one_conductor_that_touches_nothing() -> None:
+    case = case_of(
+        f"  pair: {{kind: pair, {WIRE}}}\n"
+        "  screen: {kind: screen, inner_diameter: 3, thickness: 0.05, drain: {diameter: 0.3, facing: 90}}\n"
+        "  jacket: {kind: jacket, inner_diameter: 3.1, thickness: 0.4, permittivity: 5, material: PVC}\n",
+        "boundary: {kind: open}\nreference: screen",
+    )
+    assert [conductor.name for conductor in case.conductors] == ["pair.1", "pair.2", "screen"]
+    assert [dielectric.name for dielectric in case.dielectrics] == ["jacket"]
+    solution = solve(build_layout(case), case.accuracy)
+    assert solution.status == "met"
+    without = case_of(f"  pair: {{kind: pair, {WIRE}}}", "boundary: {kind: shield, shape: circle, diameter: 3}")
+    nearly = solve(build_layout(without), case.accuracy)
+    gained = np.diag(solution.bracket.lower) - np.diag(nearly.bracket.upper)
+    assert (gained > 0).all()  # more grounded metal, more capacitance
+    assert_allclose(solution.bracket.value, nearly.bracket.value, rtol=0.03)  # the drain wire is all that differs
+
+
+def test_screen_faults() -> None:
+    with pytest.raises(CaseError) as caught:
+        case_of(
+            "  a: {kind: screen, inner_diameter: 3, thickness: 0.05, drain: {facing: 90}}\n"
+            "  b: {kind: screen, inner_diameter: 3, thickness: 0.05, drain: {diameter: 2}}\n"
+            "  c: {kind: jacket, inner_diameter: 3, thickness: 0.05}\n"
+        )
+    said = {problem.key: problem.text for problem in caught.value.problems}
+    assert "exactly one of diameter, awg" in said["constructions.a.drain"]
+    assert "more than half" in said["constructions.b.drain"]
+    assert "'permittivity' is missing" in said["constructions.c"]
+
+
 BOARD = """\
   pcb:
     kind: board

@@ -9,6 +9,7 @@ from nightcap.geometry.case_file.constructions.board import read_board
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.copies import read_copies
 from nightcap.geometry.case_file.constructions.groups import read_bundle, read_pair, read_quad, read_ribbon, read_ring
+from nightcap.geometry.case_file.constructions.sheaths import read_jacket, read_screen
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
 from nightcap.geometry.case_file.yaml_tree import Tree
 
@@ -18,6 +19,8 @@ CONSTRUCTIONS: dict[str, Callable[[Place, str], Built | None]] = {
     "ring": read_ring,
     "bundle": read_bundle,
     "ribbon": read_ribbon,
+    "screen": read_screen,
+    "jacket": read_jacket,
     "board": read_board,
 }
 """A new construction is one more reader and one more line here; copies, which need what was drawn, are apart."""

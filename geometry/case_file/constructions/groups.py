@@ -15,7 +15,7 @@ from nightcap.geometry.case_file.quantities import Degrees, PointOf, PositiveLen
 from nightcap.geometry.case_file.schema import Entry, MaterialKeys, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
-from nightcap.geometry.shapes import Circle
+from nightcap.geometry.shapes import Circle, Ring
 from nightcap.geometry.sites import hexagonal_sites, ring_sites, row_sites, touching_ring_radius
 
 MOST_WIRES = 500
@@ -152,12 +152,13 @@ def _read(place: Place, name: str, model: type[GroupKeys], sites: Sites, count: 
 def _sheath(
     name: str, wire: Conductor, centres: Sequence[Point], fill: FillerEntry | None, wrap: BeltEntry | None
 ) -> tuple[Dielectric, ...]:
-    """Belt and filler around wires, the belt painted first."""
-    around = 2 * max(math.hypot(*at) for at in centres) + max(overall_size(wire))
-    inner = fill.diameter if fill and fill.diameter else around
+    """Belt and filler around wires."""
+    inner = 2 * max(math.hypot(*at) for at in centres) + max(overall_size(wire))
+    inner = fill.diameter if fill and fill.diameter else inner
     painted = []
     if wrap:
-        painted.append(Dielectric(f"{name}.belt", Circle((0.0, 0.0), inner / 2 + wrap.thickness), wrap.record()))
+        around = Ring((0.0, 0.0), inner / 2 + wrap.thickness, inner / 2)
+        painted.append(Dielectric(f"{name}.belt", around, wrap.record()))
     if fill:
         painted.append(Dielectric(f"{name}.filler", Circle((0.0, 0.0), inner / 2), fill.record()))
     return tuple(painted)
