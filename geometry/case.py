@@ -39,6 +39,8 @@ class Conductor:
     shape: Shape
     coatings: tuple[Coating, ...] = ()
     floating: bool = False
+    conductivity: float | None = None
+    """S/m, where the file gives it; the capacitance does not depend on it."""
 
 
 @dataclass(frozen=True)

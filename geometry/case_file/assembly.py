@@ -11,17 +11,12 @@ from nightcap.geometry.case_file.boundaries import read_boundary
 from nightcap.geometry.case_file.consistency import check_case, check_name
 from nightcap.geometry.case_file.constructions import read_constructions
 from nightcap.geometry.case_file.constructions.built import Built
+from nightcap.geometry.case_file.entries import ConductorKeys
 from nightcap.geometry.case_file.layers import check_coatings, read_coatings
+from nightcap.geometry.case_file.materials import MaterialKeys, read_materials
 from nightcap.geometry.case_file.problems import Problems, under
 from nightcap.geometry.case_file.quantities import LENGTHS
-from nightcap.geometry.case_file.schema import (
-    CaseEntry,
-    ConductorKeys,
-    ExpectEntry,
-    LimitsEntry,
-    MaterialKeys,
-    checked,
-)
+from nightcap.geometry.case_file.schema import CaseEntry, ExpectEntry, LimitsEntry, checked
 from nightcap.geometry.case_file.shapes import shaped
 from nightcap.geometry.case_file.symmetry import read_symmetry
 from nightcap.geometry.case_file.twist import read_twist
@@ -32,7 +27,8 @@ from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 
 def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None) -> Case:
     """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file."""
-    context = {"unit": file_unit(tree), "values": values or Values()}
+    context: dict[str, Any] = {"unit": file_unit(tree), "values": values or Values()}
+    context["materials"] = read_materials(tree.get("materials"), problems, context)
     entry = checked(CaseEntry, tree, "", problems, context)
     conductors, dielectrics = _drawn(tree, problems, context)
     background = _background(tree.get("background"), problems, context)
@@ -118,7 +114,7 @@ def _conductors(tree: Tree, problems: Problems, context: dict[str, Any]) -> tupl
         if read:
             keys, shape = read
             check_coatings(shape, coatings, under(path, "coatings"), problems)
-            conductors.append(Conductor(name, shape, coatings, keys.floating))
+            conductors.append(Conductor(name, shape, coatings, keys.floating, keys.siemens_per_metre()))
     return tuple(conductors)
 
 

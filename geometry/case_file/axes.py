@@ -12,7 +12,7 @@ from nightcap.geometry.case_file.expressions import Formula
 from nightcap.geometry.case_file.parameters import Parameters, check_parameter_name, written
 from nightcap.geometry.case_file.problems import Problems, nearest, one_of, under
 from nightcap.geometry.case_file.quantities import PER_CENT, QUANTITY, whole
-from nightcap.geometry.case_file.schema import Entry, checked
+from nightcap.geometry.case_file.schema import COUNT, Entry, checked
 from nightcap.geometry.case_file.values import Values
 from nightcap.geometry.case_file.yaml_tree import Tree
 
@@ -58,8 +58,12 @@ class RangeKeys(Entry):
 
     start: Annotated[Any, BeforeValidator(_measure)] = Field(alias="from", description="First value.")
     to: Annotated[Any, BeforeValidator(_measure)] = Field(description="Last value.")
-    steps: Annotated[int, BeforeValidator(_steps)] = Field(description="Number of values, the two ends included.")
-    scale: Annotated[Literal["linear", "logarithmic"], BeforeValidator(_scale)] = "linear"
+    steps: Annotated[int, BeforeValidator(_steps), COUNT] = Field(
+        description="Number of values, the two ends included."
+    )
+    scale: Annotated[Literal["linear", "logarithmic"], BeforeValidator(_scale)] = Field(
+        "linear", description="linear: equal steps; logarithmic: equal ratios."
+    )
 
 
 class ToleranceKeys(Entry):

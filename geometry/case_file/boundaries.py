@@ -18,15 +18,15 @@ from nightcap.geometry.shapes import Rectangle, chains
 class ShieldKeys(Entry):
     """A grounded conductor whose inside is the shape."""
 
-    kind: Text
-    name: Text = "shield"
+    kind: Text = Field(description="Word for the boundary.")
+    name: Text = Field("shield", description="What it is called in results.")
 
 
 class BoxKeys(Entry):
     """A rectangular shield."""
 
-    kind: Text
-    name: Text = "box"
+    kind: Text = Field(description="Word for the boundary.")
+    name: Text = Field("box", description="What it is called in results.")
     width: PositiveLength = Field(description="Of its inside.")
     height: PositiveLength = Field(description="Of its inside.")
     at: PointOf = Field((0.0, 0.0), description="Centre.")
@@ -35,14 +35,14 @@ class BoxKeys(Entry):
 class OpenKeys(Entry):
     """Unbounded space all around."""
 
-    kind: Text
+    kind: Text = Field(description="Word for the boundary.")
 
 
 class GroundPlaneKeys(Entry):
     """A grounded plane below the layout."""
 
-    kind: Text
-    name: Text = "plane"
+    kind: Text = Field(description="Word for the boundary.")
+    name: Text = Field("plane", description="What it is called in results.")
     at: Length = Field(0.0, description="Height y of the plane.")
 
 
@@ -68,6 +68,12 @@ def _ground_plane(tree: Tree, path: str, problems: Problems, context: dict[str, 
     return GroundPlane(entry.at, entry.name) if entry else None
 
 
+KEYS: dict[str, type[Entry]] = {
+    "shield": ShieldKeys,
+    "box": BoxKeys,
+    "open": OpenKeys,
+    "ground_plane": GroundPlaneKeys,
+}
 BOUNDARIES = {"shield": _shield, "box": _box, "open": _open, "ground_plane": _ground_plane}
 """A new kind is one more reader and one more line here."""
 

@@ -5,8 +5,9 @@ from __future__ import annotations
 from typing import Any
 
 from nightcap.geometry.case import Coating
+from nightcap.geometry.case_file.entries import CoatingEntry
 from nightcap.geometry.case_file.problems import Problems, under
-from nightcap.geometry.case_file.schema import CoatingEntry, checked
+from nightcap.geometry.case_file.schema import checked
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.shapes import Shape
 

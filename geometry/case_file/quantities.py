@@ -7,7 +7,7 @@ import re
 from collections.abc import Callable, Mapping
 from typing import Annotated, Any
 
-from pydantic import BeforeValidator, ValidationInfo
+from pydantic import BeforeValidator, ValidationInfo, WithJsonSchema
 from pydantic_core import PydanticCustomError
 
 from nightcap.geometry.case_file import units
@@ -153,17 +153,36 @@ def _awg(value: object, info: ValidationInfo) -> float:
     return float(0.005 * 25.4e-3 * 92.0 ** ((36 - gauge) / 39))
 
 
-Length = Annotated[float, BeforeValidator(_length)]
-PositiveLength = Annotated[float, BeforeValidator(_positive)]
-LengthFromZero = Annotated[float, BeforeValidator(_not_negative)]
-PointOf = Annotated[tuple[float, float], BeforeValidator(_point)]
-Points = Annotated[tuple[tuple[float, float], ...], BeforeValidator(_corners)]
-Gauge = Annotated[float, BeforeValidator(_awg)]
-PlainNumber = Annotated[float, BeforeValidator(_within({}, -1e12, 1e12, "30"))]
-Degrees = Annotated[float, BeforeValidator(_within({}, -360.0, 360.0, "30"))]
-Permittivity = Annotated[float, BeforeValidator(_within({}, 1.0, 1e5, "2.26"))]
-LossTangent = Annotated[float, BeforeValidator(_within({}, 0.0, 10.0, "2e-4"))]
-Accuracy = Annotated[float, BeforeValidator(_within(PER_CENT, 1e-9, 0.5, '1e-4 or "0.01 %"'))]
-Tolerance = Annotated[float, BeforeValidator(_within(PER_CENT, 0.0, 1.0, '1e-4 or "0.01 %"'))]
-Memory = Annotated[float, BeforeValidator(_within(MEMORY, 1e7, 1e14, '"2 GB"'))]
-Duration = Annotated[float, BeforeValidator(_within(TIMES, 0.0, 1e7, '"10 min"'))]
+def _takes(word: str, *types: str) -> WithJsonSchema:
+    """What an editor is told of a kind of value."""
+    return WithJsonSchema({"title": word, "type": list(types)})
+
+
+LENGTH, NUMBER = _takes("length", "number", "string"), _takes("number", "number", "string")
+POINT = {"title": "point [x, y]", "type": "array", "minItems": 2, "maxItems": 2}
+Length = Annotated[float, BeforeValidator(_length), LENGTH]
+PositiveLength = Annotated[float, BeforeValidator(_positive), LENGTH]
+LengthFromZero = Annotated[float, BeforeValidator(_not_negative), LENGTH]
+PointOf = Annotated[tuple[float, float], BeforeValidator(_point), WithJsonSchema(POINT)]
+LIST_OF_POINTS = WithJsonSchema({"title": "list of points", "type": "array", "items": POINT})
+Points = Annotated[tuple[tuple[float, float], ...], BeforeValidator(_corners), LIST_OF_POINTS]
+Gauge = Annotated[float, BeforeValidator(_awg), _takes("wire gauge", "integer", "string")]
+PlainNumber = Annotated[float, BeforeValidator(_within({}, -1e12, 1e12, "30")), NUMBER]
+Degrees = Annotated[float, BeforeValidator(_within({}, -360.0, 360.0, "30")), _takes("degrees", "number", "string")]
+Permittivity = Annotated[float, BeforeValidator(_within({}, 1.0, 1e5, "2.26")), NUMBER]
+LossTangent = Annotated[float, BeforeValidator(_within({}, 0.0, 10.0, "2e-4")), NUMBER]
+FRACTION = _takes("fraction or per cent", "number", "string")
+Accuracy = Annotated[float, BeforeValidator(_within(PER_CENT, 1e-9, 0.5, '1e-4 or "0.01 %"')), FRACTION]
+Tolerance = Annotated[float, BeforeValidator(_within(PER_CENT, 0.0, 1.0, '1e-4 or "0.01 %"')), FRACTION]
+Fraction = Annotated[float, BeforeValidator(_within(PER_CENT, 0.0, 0.99, '0.5 or "50 %"')), FRACTION]
+Memory = Annotated[
+    float,
+    BeforeValidator(_within(MEMORY, 1e7, 1e14, '"2 GB"')),
+    _takes("bytes, or with B, kB, MB, GB", "number", "string"),
+]
+Duration = Annotated[
+    float,
+    BeforeValidator(_within(TIMES, 0.0, 1e7, '"10 min"')),
+    _takes("seconds, or with s, min, h", "number", "string"),
+]
+Conductivity = Annotated[float, BeforeValidator(_within({}, 1.0, 1e9, "58e6")), NUMBER]

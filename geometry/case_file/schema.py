@@ -5,18 +5,15 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Annotated, Any, TypeVar, get_args
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, ValidationInfo
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, ValidationInfo, WithJsonSchema
 
-from nightcap.geometry.case import Limits, Material
+from nightcap.geometry.case import Limits
 from nightcap.geometry.case_file.problems import Problems, listed, nearest, under
 from nightcap.geometry.case_file.quantities import (
     LENGTHS,
     Accuracy,
     Duration,
-    LossTangent,
     Memory,
-    Permittivity,
-    PositiveLength,
     Tolerance,
     number,
     values_of,
@@ -103,43 +100,30 @@ def _reference(value: object) -> tuple[str, ...]:
 
 Text = Annotated[str, BeforeValidator(_text)]
 Flag = Annotated[bool, BeforeValidator(_flag)]
-Matrix = Annotated[tuple[tuple[float, ...], ...], BeforeValidator(_matrix)]
+Matrix = Annotated[
+    tuple[tuple[float, ...], ...],
+    BeforeValidator(_matrix),
+    WithJsonSchema({"title": "matrix", "type": "array", "items": {"type": "array"}}),
+]
+NAMES = {"type": "array", "items": {"type": "string"}}
 
 
-class MaterialKeys(Entry):
-    """A dielectric, by its numbers."""
-
-    permittivity: Permittivity = Field(description="Relative permittivity, at least 1.")
-    loss_tangent: LossTangent = Field(0.0, description="Loss tangent.")
-    material: Text = Field("", description="What it is called in pictures and tables.")
-
-    def record(self) -> Material:
-        """The material of the case."""
-        return Material(self.permittivity, self.loss_tangent, self.material)
-
-
-class CoatingEntry(MaterialKeys):
-    """One layer of insulation."""
-
-    thickness: PositiveLength = Field(description="Thickness of the layer.")
-
-
-class ConductorKeys(Entry):
-    """What a conductor has besides its shape."""
-
-    coatings: Any = Field(None, description="Layers of insulation, from the inside out.")
-    floating: Flag = Field(False, description="True for a conductor without charge, e.g. an unconnected core.")
+COUNT = WithJsonSchema({"title": "whole number", "type": ["integer", "string"]})
+GROUPS = WithJsonSchema({"title": "list of groups of names", "type": "array", "items": NAMES})
+REFERENCE = WithJsonSchema({"title": "name or list of names", "anyOf": [{"type": "string"}, NAMES]})
 
 
 class LimitsEntry(Entry):
     """What a case may use."""
 
-    triangles: Annotated[int, BeforeValidator(_triangles)] = Limits().triangles
-    variants: Annotated[int, BeforeValidator(_variants)] = Field(
+    triangles: Annotated[int, BeforeValidator(_triangles), COUNT] = Field(
+        Limits().triangles, description="Most triangles of a mesh."
+    )
+    variants: Annotated[int, BeforeValidator(_variants), COUNT] = Field(
         Limits().variants, description="Combinations of the values in 'vary'."
     )
-    memory: Memory = Limits().memory
-    time: Duration = Limits().time
+    memory: Memory = Field(Limits().memory, description="Most memory of a solution, about.")
+    time: Duration = Field(Limits().time, description="Most time of a case, about.")
 
 
 class ExpectEntry(Entry):
@@ -156,23 +140,28 @@ class CaseEntry(Entry):
     """The keys of a whole file; entries with shapes are read one by one afterwards."""
 
     title: Text = Field("", description="One line about the case.")
-    units: Annotated[float, BeforeValidator(_unit)] = Field(1e-3, description="Unit of bare numbers.")
+    units: Annotated[float, BeforeValidator(_unit), WithJsonSchema({"enum": list(LENGTHS)})] = Field(
+        1e-3, description="Unit of bare numbers."
+    )
     accuracy: Accuracy = Field(1e-4, description="Half-width of the bracket relative to sqrt(C_ii C_jj).")
     parameters: Any = Field(None, description="Name to number or formula; the names may stand in any number.")
     vary: Any = Field(None, description="Parameter to list, range or tolerance; one variant per combination.")
     conductors: Any = Field(None, description="Name to shape and coatings.")
+    materials: Any = Field(None, description="Materials of the file's own by name, or a file beside it.")
     dielectrics: Any = Field(None, description="Name to shape and material; later ones cover earlier ones.")
     constructions: Any = Field(None, description="Name to pair, ribbon, board ...: what cables are made of.")
     background: Any = Field(None, description="Material of all that is not drawn.")
     boundary: Any = Field(description="Shield, box, open space or ground plane.")
-    reference: Annotated[tuple[str, ...], BeforeValidator(_reference)] = Field(
+    reference: Annotated[tuple[str, ...], BeforeValidator(_reference), REFERENCE] = Field(
         (), description="The conductor that the matrix is relative to, or a list of them that are one."
     )
     symmetry: Any = Field(None, description="Lines of symmetry; what lies on the greater side of each is solved.")
     twist: Any = Field(None, description="Lay length and pitch circle of twisted cores.")
-    tie: Annotated[tuple[tuple[str, ...], ...], BeforeValidator(_names)] = ()
-    limits: Any = None
-    expect: Any = None
+    tie: Annotated[tuple[tuple[str, ...], ...], BeforeValidator(_names), GROUPS] = Field(
+        (), description="Groups of conductors that are joined, each a list of names."
+    )
+    limits: Any = Field(None, description="What the case may use before it stops.")
+    expect: Any = Field(None, description="A matrix to compare the result with, and its source.")
 
 
 def checked(

@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import Annotated, Any
 
-from pydantic import Field, model_validator
+from pydantic import Field, WithJsonSchema, model_validator
 
 from nightcap.geometry.case_file.problems import Problems, one_of, under
 from nightcap.geometry.case_file.quantities import Length
@@ -19,7 +19,9 @@ EXAMPLE = "a list of one or two lines, e.g. [{wall: magnetic, x: 0}, {wall: elec
 class LineKeys(Entry):
     """One line; what lies on its greater side is solved."""
 
-    wall: Text = Field(description="electric: potential zero, odd fields; magnetic: no flux passes, even fields.")
+    wall: Annotated[Text, WithJsonSchema({"enum": list(WALLS)})] = Field(
+        description="electric: potential zero, odd fields; magnetic: no flux passes, even fields."
+    )
     x: Length | None = Field(None, description="The line x = ...; what lies right of it is solved.")
     y: Length | None = Field(None, description="The line y = ...; what lies above it is solved.")
 

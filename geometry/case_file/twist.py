@@ -5,12 +5,12 @@ from __future__ import annotations
 import math
 from typing import Annotated, Any
 
-from pydantic import BeforeValidator, Field, model_validator
+from pydantic import BeforeValidator, Field, WithJsonSchema, model_validator
 
 from nightcap.geometry.case import Conductor
 from nightcap.geometry.case_file.problems import Problems, one_of
 from nightcap.geometry.case_file.quantities import PositiveLength
-from nightcap.geometry.case_file.schema import Entry, checked
+from nightcap.geometry.case_file.schema import NAMES, Entry, checked
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.painting import box
 from nightcap.geometry.twist import Twist
@@ -27,7 +27,9 @@ class TwistKeys(Entry):
 
     lay_length: PositiveLength = Field(description="Length of cable in which a core goes once around.")
     pitch_diameter: PositiveLength | None = Field(None, description="Of the circle through the centres of the cores.")
-    between: Annotated[tuple[str, str], BeforeValidator(_two_names)] | None = Field(
+    between: (
+        Annotated[tuple[str, str], BeforeValidator(_two_names), WithJsonSchema({"title": "two names", **NAMES})] | None
+    ) = Field(
         None, description="Two conductors opposite each other, instead of the diameter: the distance of their centres."
     )
 

@@ -37,6 +37,15 @@ examples:
 """
 
 
+SCHEMA_EXAMPLES = """\
+examples:
+  nightcap schema > nightcap.schema.json
+      and as the first line of a case file, for editors that speak the
+      YAML language server protocol:
+      # yaml-language-server: $schema=nightcap.schema.json
+"""
+
+
 def build_parser() -> argparse.ArgumentParser:
     """The parser of the whole command line."""
     parser = argparse.ArgumentParser(
@@ -49,6 +58,14 @@ def build_parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", required=True)
     _add_run(commands)
     _add_check(commands)
+    _add_materials(commands)
+    commands.add_parser(
+        "schema",
+        help="print the JSON Schema of a case file, for editors",
+        description="Prints the JSON Schema (draft 2020-12) of a case file, for completion and hover in an editor.",
+        epilog=SCHEMA_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
     return parser
 
 
@@ -83,6 +100,17 @@ def _add_check(commands: argparse._SubParsersAction[argparse.ArgumentParser]) ->
     )
     _add_paths(check)
     check.add_argument("--draw", type=Path, metavar="DIR", help="folder that receives a drawing of each case")
+
+
+def _add_materials(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    materials = commands.add_parser(
+        "materials",
+        help="list the materials that a case file may name",
+        description="Lists insulations and metals with their values and where these come from.",
+    )
+    materials.add_argument(
+        "word", nargs="?", default="", metavar="WORD", help="only those with this word in their name"
+    )
 
 
 def _add_paths(parser: argparse.ArgumentParser) -> None:

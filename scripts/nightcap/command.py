@@ -8,7 +8,7 @@ from enum import IntEnum
 
 from nightcap.arguments import build_parser
 from nightcap.geometry.errors import UsageError
-from nightcap.printer import complain
+from nightcap.printer import complain, show
 
 
 class ExitCode(IntEnum):
@@ -47,4 +47,24 @@ def _check(options: Namespace) -> bool:
     return check(options.paths, options.draw)
 
 
-COMMANDS: dict[str, Callable[[Namespace], bool]] = {"run": _run, "check": _check}
+def _materials(options: Namespace) -> bool:
+    from nightcap.catalogue import list_materials
+
+    return list_materials(options.word)
+
+
+def _schema(_: Namespace) -> bool:
+    from json import dumps
+
+    from nightcap.geometry.case_file.json_schema import case_schema
+
+    show([dumps(case_schema(), indent=1, ensure_ascii=False)])
+    return True
+
+
+COMMANDS: dict[str, Callable[[Namespace], bool]] = {
+    "run": _run,
+    "check": _check,
+    "materials": _materials,
+    "schema": _schema,
+}

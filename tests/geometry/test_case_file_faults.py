@@ -152,10 +152,10 @@ FAULTS = {
         "between 1 and",
     ),
     "material without permittivity": (
-        changed("permittivity: 2.3", "material: PE"),
+        changed("permittivity: 2.3", "material: polyethylen"),
         10,
         "conductors.white.coatings[0]",
-        "'permittivity' is missing",
+        "did you mean 'polyethylene'",
     ),
     "accuracy": (changed("accuracy: 1e-4", "accuracy: 200 %"), 2, "accuracy", "between"),
     "accuracy zero": (changed("accuracy: 1e-4", "accuracy: 0"), 2, "accuracy", "between"),

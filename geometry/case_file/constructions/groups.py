@@ -6,13 +6,14 @@ import math
 from collections.abc import Callable, Sequence
 from typing import Annotated, Any
 
-from pydantic import BeforeValidator, Field, ValidationInfo
+from pydantic import BeforeValidator, Field, ValidationInfo, WithJsonSchema
 
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.wires import overall_size, placed, read_wire
+from nightcap.geometry.case_file.materials import MaterialKeys
 from nightcap.geometry.case_file.quantities import Degrees, PointOf, PositiveLength, whole
-from nightcap.geometry.case_file.schema import Entry, MaterialKeys, Text
+from nightcap.geometry.case_file.schema import COUNT, NAMES, Entry, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
 from nightcap.geometry.shapes import Circle, Ring
@@ -35,8 +36,8 @@ def _names(value: object) -> tuple[str, ...]:
     return tuple(value)
 
 
-Count = Annotated[int, BeforeValidator(_wires)]
-Names = Annotated[tuple[str, ...], BeforeValidator(_names)]
+Count = Annotated[int, BeforeValidator(_wires), COUNT]
+Names = Annotated[tuple[str, ...], BeforeValidator(_names), WithJsonSchema({"title": "list of names", **NAMES})]
 
 
 class PlacedKeys(Entry):

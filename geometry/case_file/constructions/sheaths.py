@@ -10,8 +10,9 @@ from pydantic import Field, model_validator
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import PlacedKeys
+from nightcap.geometry.case_file.materials import MaterialKeys
 from nightcap.geometry.case_file.quantities import Degrees, Gauge, PositiveLength
-from nightcap.geometry.case_file.schema import Entry, MaterialKeys
+from nightcap.geometry.case_file.schema import Entry
 from nightcap.geometry.case_file.shapes.keys import exactly_one
 from nightcap.geometry.shapes import Circle, Ring, Shape, Union
 

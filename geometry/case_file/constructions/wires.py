@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from nightcap.geometry.case import Conductor
 from nightcap.geometry.case_file.constructions.built import Place, total_thickness
+from nightcap.geometry.case_file.entries import ConductorKeys
 from nightcap.geometry.case_file.layers import check_coatings, read_coatings
 from nightcap.geometry.case_file.problems import under
-from nightcap.geometry.case_file.schema import ConductorKeys
 from nightcap.geometry.case_file.shapes import shaped
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
@@ -29,7 +31,7 @@ def read_wire(place: Place) -> Conductor | None:
     if read is None:
         return None
     check_coatings(read[1], coatings, under(wire.path, "coatings"), wire.problems)
-    return Conductor("", read[1], coatings, read[0].floating)
+    return Conductor("", read[1], coatings, read[0].floating, read[0].siemens_per_metre())
 
 
 def overall_size(wire: Conductor) -> Point:
@@ -40,4 +42,4 @@ def overall_size(wire: Conductor) -> Point:
 
 def placed(wire: Conductor, name: str, at: Point) -> Conductor:
     """The wire in a place of its own."""
-    return Conductor(name, Motion(at).shape(wire.shape), wire.coatings, wire.floating)
+    return replace(wire, name=name, shape=Motion(at).shape(wire.shape))

@@ -5,8 +5,9 @@ from __future__ import annotations
 from functools import cache
 from typing import Any
 
+from nightcap.geometry.case_file.entries import ConductorKeys
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
-from nightcap.geometry.case_file.schema import ConductorKeys, Entry, EntryType, checked
+from nightcap.geometry.case_file.schema import Entry, EntryType, checked
 from nightcap.geometry.case_file.shapes.bent_strips import BentStripKeys
 from nightcap.geometry.case_file.shapes.circles import CircleKeys, RingKeys
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys
@@ -44,10 +45,11 @@ ONLY_FOR = {"slab": "dielectrics", "union": "conductors", "strands": "conductors
 """The one group of entries that a shape is for."""
 
 
-def _words_for(path: str) -> list[str]:
-    """The shapes that an entry may have."""
+def words_for(path: str, own: type[Entry]) -> list[str]:
+    """The shapes that an entry at a path, with keys of its own, may have."""
     group = path.partition(".")[0]
-    return [word for word in SHAPES if group in (ONLY_FOR.get(word, group), "constructions")]
+    words = [word for word in SHAPES if group in (ONLY_FOR.get(word, group), "constructions")]
+    return [word for word in words if own is ConductorKeys or not SHAPES[word].is_thin]
 
 
 def shaped(
@@ -57,7 +59,7 @@ def shaped(
     word = _word(own, tree, path, problems)
     if word is None:
         return None
-    entry = checked(_combined(own, SHAPES[word]), tree, path, problems, context)
+    entry = checked(combined(own, SHAPES[word]), tree, path, problems, context)
     if entry is None:
         return None
     if SHAPES[word].has_parts:
@@ -85,7 +87,7 @@ def _parts(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -
 
 def _word(own: type[Entry], tree: Tree, path: str, problems: Problems) -> str | None:
     """The shape that an entry names, or None after noting why it may not."""
-    words = _words_for(path)
+    words = words_for(path, own)
     word = tree.get("shape") if isinstance(tree, dict) else None
     if not isinstance(tree, dict):
         problems.add(path, f"must be a mapping with the key 'shape' ({listed(words)}) and the keys of that shape")
@@ -93,16 +95,16 @@ def _word(own: type[Entry], tree: Tree, path: str, problems: Problems) -> str | 
         problems.add(path, f"the key 'shape' is missing; allowed: {listed(words)}")
     elif not isinstance(word, str) or word not in SHAPES:
         problems.add(under(path, "shape"), one_of(word, words))
-    elif word not in words:
-        problems.add(under(path, "shape"), f"'{word}' is a shape for {ONLY_FOR[word]} only; allowed: {listed(words)}")
     elif SHAPES[word].is_thin and own is not ConductorKeys:
         problems.add(under(path, "shape"), f"a {word} encloses nothing; only a conductor can be one")
+    elif word not in words:
+        problems.add(under(path, "shape"), f"'{word}' is a shape for {ONLY_FOR[word]} only; allowed: {listed(words)}")
     else:
         return word
     return None
 
 
 @cache
-def _combined(own: type[Entry], shape: type[ShapeKeys]) -> Any:
-    """One model of both sets of keys."""
+def combined(own: type[Entry], shape: type[ShapeKeys]) -> Any:
+    """One model of a shape's keys and an entry's own."""
     return type(f"{own.__name__}{shape.__name__}", (shape, own), {"__module__": __name__})

@@ -6,7 +6,7 @@ from typing import Annotated, Literal
 
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from nightcap.geometry.case_file.quantities import PositiveLength, points_of
+from nightcap.geometry.case_file.quantities import LIST_OF_POINTS, PositiveLength, points_of
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import BentStrip
@@ -19,7 +19,9 @@ def _path(value: object, info: ValidationInfo) -> tuple[Point, ...]:
 class BentStripKeys(ShapeKeys):
     """A strip of even thickness along points, round on the outside of its joints."""
 
-    points: Annotated[tuple[Point, ...], BeforeValidator(_path)] = Field(description="Points of its middle line.")
+    points: Annotated[tuple[Point, ...], BeforeValidator(_path), LIST_OF_POINTS] = Field(
+        description="Points of its middle line."
+    )
     thickness: PositiveLength = Field(description="Thickness of the strip.")
     ends: Literal["flat", "round"] = Field("flat", description="flat or round.")
 

@@ -9,6 +9,7 @@ from typing import Annotated
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
 from nightcap.geometry.case_file.quantities import LengthFromZero, PlainNumber, Points, PositiveLength, whole
+from nightcap.geometry.case_file.schema import COUNT
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys, TurnedKeys, exactly_one
 from nightcap.geometry.curves import Point
 from nightcap.geometry.motion import Motion
@@ -48,7 +49,7 @@ def _sides(value: object, info: ValidationInfo) -> int:
 class RegularPolygonKeys(TurnedKeys):
     """A polygon of equal sides; before it is turned its lowest side lies along x."""
 
-    sides: Annotated[int, BeforeValidator(_sides)] = Field(description="Number of sides.")
+    sides: Annotated[int, BeforeValidator(_sides), COUNT] = Field(description="Number of sides.")
     across_flats: PositiveLength | None = Field(None, description="Twice the distance of a side from the centre.")
     across_corners: PositiveLength | None = Field(None, description="Twice the distance of a corner from the centre.")
     corner_radius: LengthFromZero = Field(0.0, description="Radius of the corners.")

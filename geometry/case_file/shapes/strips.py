@@ -8,7 +8,7 @@ from typing import Annotated, ClassVar
 
 from pydantic import BeforeValidator, Field, model_validator
 
-from nightcap.geometry.case_file.quantities import MOST_POINTS, Degrees, PointOf, PositiveLength
+from nightcap.geometry.case_file.quantities import LIST_OF_POINTS, MOST_POINTS, Degrees, PointOf, PositiveLength
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys
 from nightcap.geometry.strip import Strip
 
@@ -26,7 +26,7 @@ def _some_points(value: object) -> object:
     return value
 
 
-StripPoints = Annotated[tuple[PointOf, ...], BeforeValidator(_some_points)]
+StripPoints = Annotated[tuple[PointOf, ...], BeforeValidator(_some_points), LIST_OF_POINTS]
 
 
 class StripKeys(ShapeKeys):

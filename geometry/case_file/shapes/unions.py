@@ -8,7 +8,7 @@ from typing import Annotated, Any, ClassVar, Literal
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
 from nightcap.geometry.case_file.quantities import Gauge, PlainNumber, PositiveLength, whole
-from nightcap.geometry.case_file.schema import Entry
+from nightcap.geometry.case_file.schema import COUNT, Entry
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys, TurnedKeys, exactly_one
 from nightcap.geometry.motion import Motion
 from nightcap.geometry.shapes import Circle, Shape, Strands
@@ -30,7 +30,7 @@ def _count(value: object, info: ValidationInfo) -> int:
 class StrandsKeys(TurnedKeys):
     """Equal round wires in whole layers about the middle one: one conductor."""
 
-    count: Annotated[int, BeforeValidator(_count)] = Field(description="Number of strands: 7, 19, 37 or 61.")
+    count: Annotated[int, BeforeValidator(_count), COUNT] = Field(description="Number of strands: 7, 19, 37 or 61.")
     strand_diameter: PositiveLength | None = Field(None, description="Diameter of one strand.")
     overall_diameter: PositiveLength | None = Field(None, description="Diameter over all strands.")
     awg: Gauge | None = Field(None, description="Gauge of one strand, ASTM B258.")
@@ -76,7 +76,7 @@ class StrandsKeys(TurnedKeys):
 class LayerOfWiresEntry(Entry):
     """Equal wires evenly around what lies within."""
 
-    count: Annotated[int, BeforeValidator(lambda value, info: whole(value, 1, 200, info))] = Field(
+    count: Annotated[int, BeforeValidator(lambda value, info: whole(value, 1, 200, info)), COUNT] = Field(
         description="Number of wires in the layer."
     )
     diameter: PositiveLength = Field(description="Diameter of each.")

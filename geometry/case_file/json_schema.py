@@ -1,0 +1,180 @@
+"""The JSON Schema of a case file, for editors: made from the models that check it."""
+
+from __future__ import annotations
+
+import types
+from collections.abc import Iterable, Mapping
+from typing import Any, Literal, Union, get_args, get_origin
+
+from pydantic import WithJsonSchema
+from pydantic.fields import FieldInfo
+
+from nightcap.geometry.case_file.axes import RangeKeys, ToleranceKeys
+from nightcap.geometry.case_file.boundaries import KEYS as BOUNDARY_KEYS
+from nightcap.geometry.case_file.constructions import KEYS as CONSTRUCTION_KEYS
+from nightcap.geometry.case_file.constructions.board import LayerEntry, MaskEntry, TraceEntry
+from nightcap.geometry.case_file.constructions.groups import BeltEntry, FillerEntry
+from nightcap.geometry.case_file.constructions.sheaths import DrainEntry
+from nightcap.geometry.case_file.entries import CoatingEntry, ConductorKeys
+from nightcap.geometry.case_file.materials import MaterialKeys, OwnMaterialEntry
+from nightcap.geometry.case_file.schema import CaseEntry, Entry, ExpectEntry, LimitsEntry, words_of
+from nightcap.geometry.case_file.shapes import SHAPES, combined, words_for
+from nightcap.geometry.case_file.symmetry import LineKeys
+from nightcap.geometry.case_file.twist import TwistKeys
+
+DIALECT = "https://json-schema.org/draft/2020-12/schema"
+Schema = dict[str, Any]
+NUMBER: Schema = {"title": "number or formula", "type": ["number", "string"]}
+LIKE: Schema = {"type": "string", "description": "Another entry of the same group; the keys given here go on top."}
+PLAIN = {str: "string", bool: "boolean", int: "integer", float: "number"}
+
+
+def case_schema() -> Schema:
+    """The schema of a whole file, draft 2020-12."""
+    whole = _of(CaseEntry)
+    shapes: dict[str, type[Entry]] = {"conductor": ConductorKeys, "dielectric": MaterialKeys, "part": Entry}
+    definitions: Schema = {
+        model.__name__: _of(model)
+        for model in (
+            BeltEntry, CoatingEntry, DrainEntry, ExpectEntry, FillerEntry, LayerEntry, LimitsEntry, LineKeys, MaskEntry,
+            MaterialKeys, OwnMaterialEntry, RangeKeys, ToleranceKeys, TraceEntry, TwistKeys,
+        )
+    }  # fmt: skip
+    for group, own in shapes.items():
+        models = {word: combined(own, SHAPES[word]) for word in words_for(f"{group}s", own)}
+        definitions |= _chosen_by("shape", group, models, like=group != "part")
+    definitions |= _chosen_by("kind", "construction", CONSTRUCTION_KEYS, like=True)
+    definitions |= _chosen_by("kind", "boundary", {k: v for k, v in BOUNDARY_KEYS.items() if k != "shield"}, like=False)
+    shields = {word: combined(BOUNDARY_KEYS["shield"], SHAPES[word]) for word in words_for("boundary", Entry)}
+    definitions |= _chosen_by("shape", "shield", shields, like=False)
+    definitions["boundary"]["properties"]["kind"]["enum"].append("shield")
+    definitions["boundary"]["allOf"].append(_if("kind", "shield", "shield"))
+    definitions["wire"] = {**definitions["conductor"], "anyOf": [{}]}
+    head = {"$schema": DIALECT, "title": "nightcap case file"}
+    return {**head, **whole, "anyOf": [_needs("conductors"), _needs("constructions")], "$defs": definitions}
+
+
+def _of(model: type[Entry]) -> Schema:
+    """The schema of one model, without those that it refers to."""
+    properties = {
+        key: _property(key, info) for key, info in zip(words_of(model), model.model_fields.values(), strict=True)
+    }
+    required = [info.alias or name for name, info in model.model_fields.items() if info.is_required()]
+    text = (model.__doc__ or "").strip().partition("\n")[0]
+    schema = {"type": "object", "description": text, "properties": properties, "additionalProperties": False}
+    return {**schema, "required": required} if required else schema
+
+
+def _property(key: str, info: FieldInfo) -> Schema:
+    return {**_taken(key, info), "description": info.description or ""}
+
+
+def _taken(key: str, info: FieldInfo) -> Schema:
+    """What a key takes: as its type says, or, for what is read by itself, as HOLDS says."""
+    told = [item for item in info.metadata if isinstance(item, WithJsonSchema)]
+    if told:
+        return dict(told[0].json_schema or {})
+    return HOLDS[key] if info.annotation is Any else _by_type(info.annotation)
+
+
+def _by_type(kind: Any) -> Schema:
+    origin, inner = get_origin(kind), get_args(kind)
+    if origin in (Union, types.UnionType):
+        return _by_type(next(one for one in inner if one is not type(None)))
+    told = [item for item in getattr(kind, "__metadata__", ()) if isinstance(item, WithJsonSchema)]
+    if told:
+        return dict(told[0].json_schema or {})
+    if hasattr(kind, "__metadata__"):
+        return _by_type(inner[0])
+    if origin is Literal:
+        return {"enum": list(inner)}
+    if origin is tuple and isinstance(inner[0], type) and issubclass(inner[0], Entry):
+        return {"type": "array", "items": _of(inner[0])}
+    return {"type": PLAIN[kind]}
+
+
+def _ref(name: str) -> Schema:
+    return {"$ref": f"#/$defs/{name}"}
+
+
+def _mapping(name: str) -> Schema:
+    return {"type": "object", "additionalProperties": _ref(name)}
+
+
+def _list(name: str) -> Schema:
+    return {"type": "array", "items": _ref(name)}
+
+
+def _needs(*keys: str) -> Schema:
+    return {"required": list(keys)}
+
+
+def _if(key: str, word: str, name: str) -> Schema:
+    return {"if": {"properties": {key: {"const": word}}, **_needs(key)}, "then": _ref(name)}
+
+
+def _chosen_by(key: str, group: str, models: Mapping[str, type[Entry]], *, like: bool) -> Schema:
+    """Definitions for entries whose other keys depend on a word: the entry itself, and one for each word.
+
+    like : whether it may take keys over from another entry, so that none is required.
+    """
+    description = next(iter(models.values())).model_fields[key].description or ""
+    properties: Schema = {key: {"enum": list(models), "description": description}}
+    entry: Schema = {"type": "object", "properties": properties, "allOf": []}
+    entry |= {"anyOf": [_needs(key), _needs("like")]} if like else _needs(key)
+    definitions = {group: entry}
+    if like:
+        properties["like"] = LIKE
+    for word, model in models.items():
+        schema = _of(model)
+        schema["properties"][key] = {"const": word, "description": description}
+        if like:
+            schema["properties"]["like"] = LIKE
+            schema["anyOf"] = [_needs("like"), _needs(*schema.pop("required", ()))]
+        definitions[f"{group}.{word}"] = schema
+        entry["allOf"].append(_if(key, word, f"{group}.{word}"))
+    return definitions
+
+
+def _any_of(*kinds: Schema) -> Schema:
+    return {"anyOf": list(kinds)}
+
+
+HOLDS: dict[str, Schema] = {
+    "parameters": {"type": "object", "additionalProperties": NUMBER},
+    "vary": {
+        "type": "object",
+        "additionalProperties": _any_of({"type": "array"}, _ref("RangeKeys"), _ref("ToleranceKeys")),
+    },
+    "conductors": _mapping("conductor"),
+    "dielectrics": _mapping("dielectric"),
+    "constructions": _mapping("construction"),
+    "materials": _any_of({"type": "string"}, _mapping("OwnMaterialEntry")),
+    "background": _ref("MaterialKeys"),
+    "boundary": _ref("boundary"),
+    "symmetry": _list("LineKeys"),
+    "twist": _ref("TwistKeys"),
+    "limits": _ref("LimitsEntry"),
+    "expect": _ref("ExpectEntry"),
+    "coatings": _list("CoatingEntry"),
+    "parts": _list("part"),
+    "wire": _ref("wire"),
+    "filler": _ref("FillerEntry"),
+    "belt": _ref("BeltEntry"),
+    "layers": _list("LayerEntry"),
+    "traces": _mapping("TraceEntry"),
+    "mask": _ref("MaskEntry"),
+    "drain": _ref("DrainEntry"),
+    "from": NUMBER,
+    "to": NUMBER,
+    "tolerance": NUMBER,
+}
+"""What the keys hold whose entries are read by themselves."""
+
+
+def described(schema: Schema, path: str = "") -> Iterable[tuple[str, Schema]]:
+    """Every property of a schema with its path."""
+    for key, value in schema.get("properties", {}).items():
+        yield f"{path}.{key}", value
+    for name, value in schema.get("$defs", {}).items():
+        yield from described(value, f"{path}#{name}")
