@@ -34,15 +34,27 @@ def with_even_cusps(layout: Layout, divisions: list[Floats]) -> list[Floats]:
     Where they are not, the edge between them cuts through the nearer curve, however short both are.
     """
     even = list(divisions)
-    for point, pair in _cusps(layout):
-        first = [_first_step(layout.pieces[k], point, even[k]) for k in pair]
-        nearest = min(first)
-        for k, distance in zip(pair, first, strict=True):
-            if distance > nearest * (1 + 1e-9):
-                piece = layout.pieces[k]
+    bundles = _bundles(layout)
+    for point, pieces in bundles:
+        nearest = min(_first_step(layout.pieces[k], point, even[k]) for k in pieces)
+        for k in pieces:
+            piece = layout.pieces[k]
+            if _first_step(piece, point, even[k]) > nearest * (1 + 1e-9):
                 t = nearest / piece.curve.length
                 even[k] = np.union1d(even[k], [t if piece.start == point else 1 - t])
     return even
+
+
+def _bundles(layout: Layout) -> list[tuple[int, list[int]]]:
+    """Points with all pieces that leave them in one direction."""
+    bundles: list[tuple[int, list[int]]] = []
+    for point, (one, two) in _cusps(layout):
+        mates = next((pieces for at, pieces in bundles if at == point and (one in pieces or two in pieces)), None)
+        if mates is None:
+            bundles.append((point, [one, two]))
+        else:
+            mates += [k for k in (one, two) if k not in mates]
+    return bundles
 
 
 def _first_step(piece: Piece, point: int, divisions: Floats) -> float:

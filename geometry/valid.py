@@ -36,7 +36,8 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
         flat = _without_blunt_corners(flat, np.where(straight, 0.0, turns))
         curved, valid = curved_triangles(flat, spans, bent=(turns > 0) & ~straight)
         lenses = Lenses.beside(flat, spans, straight & (turns > 0))
-        offenders = np.concatenate([curved.index[~valid], lenses.sticking_out(flat)])
+        engulfed_by = lenses.conductor(flat)
+        offenders = np.concatenate([curved.index[~valid], lenses.sticking_out(flat), _claimed_twice(flat, engulfed_by)])
         if offenders.size == 0:
             low, high = lenses.permittivity_range(flat)
             plain = {f.name: getattr(flat, f.name) for f in fields(Triangulation)}
@@ -45,7 +46,7 @@ def first_mesh(layout: Layout, grading: Grading) -> Mesh:
                 curved=curved,
                 least_permittivity=low,
                 greatest_permittivity=high,
-                engulfed_by=lenses.conductor(flat),
+                engulfed_by=engulfed_by,
                 grading=grading,
             )
         divisions = with_even_cusps(layout, _halved(divisions, flat, spans, offenders))
@@ -56,6 +57,26 @@ def _turns(flat: Triangulation, spans: Floats) -> Floats:
     """(B,) the angle by which each curve edge turns, radians; 0 for straight ones."""
     of_piece = np.array([piece.curve.length * abs(piece.curve.curvature) for piece in flat.layout.pieces])
     return of_piece[flat.curve_piece] * np.abs(spans[:, 1] - spans[:, 0])
+
+
+def _claimed_twice(flat: Triangulation, engulfed_by: Ints) -> Ints:
+    """The triangles that count as one conductor, (T,) or -1, but have a vertex that belongs to another.
+
+    There no potential would have the right value on both.
+    """
+    low = np.full(len(flat.points), np.iinfo(np.int64).max)
+    high = np.full(len(flat.points), -1)
+    on_surface = flat.edge_conductor >= 0
+    engulfed = np.flatnonzero(engulfed_by >= 0)
+    for vertices, owner in (
+        (flat.edges[on_surface], flat.edge_conductor[on_surface]),
+        (flat.triangles[engulfed], engulfed_by[engulfed]),
+    ):
+        owners = np.broadcast_to(owner[:, None], vertices.shape)
+        np.minimum.at(low, vertices, owners)
+        np.maximum.at(high, vertices, owners)
+    torn = (high >= 0) & (low != high)
+    return np.asarray(engulfed[torn[flat.triangles[engulfed]].any(axis=1)], dtype=np.int64)
 
 
 def _halved(divisions: list[Floats], flat: Triangulation, spans: Floats, offenders: Ints) -> list[Floats]:

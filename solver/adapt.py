@@ -16,6 +16,8 @@ from nightcap.solver.fields import Fields
 HIGHEST_ORDER = 8
 WIDESPREAD = 0.25
 """Where more than this fraction of the triangles is to blame, a higher order pays."""
+CLOSEST_CONTACT = 1e-5
+"""Least length of the chords at contacts, relative to the curves: what lies beside them is thinner by its square."""
 LEVELS = 4
 """Splits towards a point of the outlines in one round: only there can a field be singular."""
 
@@ -47,8 +49,9 @@ def next_step(fields: Fields, accuracy: float) -> Step:
     order = fields.stiffness.order
     excess = fields.bracket.relative / accuracy
     lenses = float(relative_share(fields)[fields.mesh.has_lens].sum())
-    if lenses > accuracy / 4:
-        contact = fields.mesh.grading.contact * max((accuracy / (10 * lenses)) ** (1 / 2), 1e-2)
+    contact = fields.mesh.grading.contact
+    if lenses > accuracy / 4 and contact > CLOSEST_CONTACT:
+        contact = max(contact * max((accuracy / (10 * lenses)) ** (1 / 2), 1e-2), CLOSEST_CONTACT)
         grading = replace(fields.mesh.grading, contact=contact)
         return Step(order, first_mesh(fields.mesh.layout, grading), f"contacts graded to {contact:.1e}")
     blamed = _blamed(fields, accuracy)

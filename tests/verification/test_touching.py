@@ -16,6 +16,7 @@ from samples import wire_on_board
 
 from nightcap.geometry.build_layout import build_layout
 from nightcap.geometry.case import Case, GroundPlane, Limits, Material, OpenSpace, Shield
+from nightcap.geometry.case_file import read_text
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 from nightcap.geometry.curves import Floats
 from nightcap.geometry.shapes import Circle
@@ -121,3 +122,18 @@ def test_the_board_is_drawn_as_it_says() -> None:
     of_air = replace(case, dielectrics=(replace(case.dielectrics[0], material=Material(1.0)),))
     one, two = (solved(c, 1e-6).bracket.value / VACUUM_PERMITTIVITY for c in (neutral, of_air))
     assert_allclose(one, two, rtol=1e-6)
+
+
+@pytest.mark.parametrize("offset", [0.02, 0.1, 0.3])
+@pytest.mark.parametrize("permittivity", [1.01, 100.0])
+def test_two_contacts_close_to_each_other(offset: float, permittivity: float) -> None:
+    """Two wires touch the surface of a slab from both sides, side by side: brackets of all accuracies overlap."""
+    text = (
+        "units: m\nconductors:\n  above: {shape: circle, radius: 1, at: [0, 1]}\n"
+        f"  below: {{shape: circle, radius: 1, at: [{offset}, -1]}}\n"
+        f"dielectrics: {{slab: {{shape: rectangle, width: 20, height: 10, at: [0, -5], permittivity: {permittivity}}}}}\n"
+        "boundary: {kind: shield, shape: circle, radius: 4}\n"
+    )
+    coarse, fine = (relative(solved(read_text(text), accuracy)) for accuracy in (1e-4, 1e-7))
+    for lower, upper in ((coarse.lower, fine.upper), (fine.lower, coarse.upper)):
+        assert np.linalg.eigvalsh(upper - lower)[0] > -1e-10 * np.abs(upper).max()
