@@ -131,7 +131,8 @@ def test_two_contacts_close_to_each_other(offset: float, permittivity: float) ->
     text = (
         "units: m\nconductors:\n  above: {shape: circle, radius: 1, at: [0, 1]}\n"
         f"  below: {{shape: circle, radius: 1, at: [{offset}, -1]}}\n"
-        f"dielectrics: {{slab: {{shape: rectangle, width: 20, height: 10, at: [0, -5], permittivity: {permittivity}}}}}\n"
+        "dielectrics:\n"
+        f"  slab: {{shape: rectangle, width: 20, height: 10, at: [0, -5], permittivity: {permittivity}}}\n"
         "boundary: {kind: shield, shape: circle, radius: 4}\n"
     )
     coarse, fine = (relative(solved(read_text(text), accuracy)) for accuracy in (1e-4, 1e-7))
