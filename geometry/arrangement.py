@@ -15,6 +15,7 @@ from scipy.spatial import cKDTree
 
 from nightcap.geometry.crossing import cut_parameters
 from nightcap.geometry.curves import Arc, Curve, Flags, Floats, Ints, Point, direction_and_bend
+from nightcap.geometry.polynomial_arc import PolynomialArc
 
 Loop = tuple[int, ...]
 """Half-edges walked with their face on the left: 2 k along piece k, 2 k + 1 against it."""
@@ -97,6 +98,8 @@ class Arrangement:
         area = ((x0 - ox) * (y1 - oy) - (x1 - ox) * (y0 - oy)) / 2
         if isinstance(curve, Arc):
             area += curve.radius**2 * (curve.sweep - math.sin(curve.sweep)) / 2
+        elif isinstance(curve, PolynomialArc):
+            area += curve.swept
         return float(area if half % 2 == 0 else -area)
 
     @cached_property
@@ -241,6 +244,9 @@ def winds_around(curves: Iterable[Curve], point: Point | Floats) -> bool:
     turn = 0.0
     px, py = float(point[0]), float(point[1])
     for curve in curves:
+        if isinstance(curve, PolynomialArc):
+            turn += curve.winding(point)
+            continue
         (ax, ay), (bx, by) = curve.start, curve.end
         ux, uy, vx, vy = ax - px, ay - py, bx - px, by - py
         turn += math.atan2(ux * vy - uy * vx, ux * vx + uy * vy)

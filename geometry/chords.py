@@ -7,9 +7,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from nightcap.geometry.curves import SAME_DIRECTION, Flags, Floats, Ints, direction_and_bend
+from nightcap.geometry.curves import SAME_DIRECTION, Curve, Flags, Floats, Ints, direction_and_bend
 from nightcap.geometry.layout import Layout, Piece
 from nightcap.geometry.mesh import Triangulation
+from nightcap.geometry.polynomial_arc import PolynomialArc
 
 
 def cusp_edges(flat: Triangulation) -> Flags:
@@ -120,7 +121,7 @@ class Lenses:
                 if triangle >= 0 and _side(start, end, top) * _side(start, end, inner) > 0:
                     edge.append(number)
                     owner.append(triangle)
-                    half_turn.append(abs(curve.curvature * (spans[rank, 1] - spans[rank, 0])) * curve.length / 2)
+                    half_turn.append(_turn(curve, *sorted(spans[rank].tolist())) / 2)
         return cls(np.array(edge, dtype=np.int64), np.array(owner, dtype=np.int64), np.array(half_turn))
 
     def sticking_out(self, flat: Triangulation) -> Ints:
@@ -152,6 +153,13 @@ class Lenses:
         for edge, owner in zip(self.edge, self.owner, strict=True):
             conductor[owner] = max(conductor[owner], flat.edge_conductor[edge])
         return conductor
+
+
+def _turn(curve: Curve, low: float, high: float) -> float:
+    """A bound on the angle by which a curve turns between two parameters, radians; twice it where that is uneven."""
+    if isinstance(curve, PolynomialArc):
+        return 2 * curve.part(low, high).turn
+    return abs(curve.curvature) * (high - low) * curve.length
 
 
 def _side(start: Floats, end: Floats, point: Floats) -> float:

@@ -8,6 +8,10 @@ from itertools import pairwise
 import numpy as np
 
 from nightcap.geometry.curves import Arc, Curve, Floats, Ints
+from nightcap.geometry.meetings import MOST, meetings
+from nightcap.geometry.polynomial_arc import PolynomialArc
+
+OUTWARD = np.array([-1.0, -1.0, 1.0, 1.0])
 
 
 class CurveTable:
@@ -23,6 +27,10 @@ class CurveTable:
         """(n,) 0 for segments."""
         self.angle = np.array([arc.start_angle for arc in arcs])
         self.sweep = np.array([arc.sweep for arc in arcs])
+        self.curves = curves
+        self.smooth = {k: curve for k, curve in enumerate(curves) if isinstance(curve, PolynomialArc)}
+        self.is_smooth = np.isin(np.arange(len(curves)), list(self.smooth))
+        """(n,) True for those that are neither segment nor arc."""
 
     def boxes(self, margin: float) -> Floats:
         """(n, 4) low x, low y, high x, high y of boxes that hold the curves."""
@@ -30,7 +38,10 @@ class CurveTable:
         bulge = self.radius * (1 - np.cos(np.minimum(half, np.pi)))
         low, high = np.minimum(self.start, self.end), np.maximum(self.start, self.end)
         reach = (margin + bulge)[:, None]
-        return np.concatenate([low - reach, high + reach], axis=1)
+        boxes = np.concatenate([low - reach, high + reach], axis=1)
+        for k, curve in self.smooth.items():
+            boxes[k] = np.array(curve.box) + margin * OUTWARD
+        return boxes
 
     def parameter(self, index: Ints, x: Floats, tolerance: float) -> Floats:
         """(n,) parameter of each point x (n, 2) on the curve of that index, or nan if it is not on it (or is nan)."""
@@ -46,6 +57,10 @@ class CurveTable:
         turned = np.where(turned > 2 * np.pi - slack, 0.0, turned)
         t = np.where(bent, turned / np.abs(self.sweep[index]), t)
         off = np.where(bent, np.abs(np.hypot(*away.T) - self.radius[index]), off)
+        for k in np.unique(index[self.is_smooth[index]]).tolist():
+            rows = np.flatnonzero((index == k) & ~np.isnan(x).any(axis=1))
+            t[rows] = self.smooth[k].nearest(x[rows])
+            off[rows] = np.hypot(*(self.smooth[k].at(t[rows]) - x[rows]).T)
         on = (off <= tolerance) & (t * length >= -tolerance) & ((t - 1) * length <= tolerance)
         return np.where(on, np.clip(t, 0.0, 1.0), np.nan)
 
@@ -91,15 +106,18 @@ def _close_pairs(table: CurveTable, tolerance: float) -> tuple[Ints, Ints]:
 
 
 def _candidates(table: CurveTable, one: Ints, two: Ints, tolerance: float) -> Floats:
-    """(n, 6, 2) points where pairs may meet: two crossings of the full lines and circles, and the four ends."""
+    """(n, MOST + 4, 2) points where pairs may meet: crossings of the full lines and circles, and the four ends."""
     swap = (table.radius[one] > 0) & (table.radius[two] == 0)
     one, two = np.where(swap, two, one), np.where(swap, one, two)
-    crossings = np.full((len(one), 2, 2), np.nan)
+    crossings = np.full((len(one), MOST, 2), np.nan)
+    smooth = table.is_smooth[one] | table.is_smooth[two]
+    for row in np.flatnonzero(smooth):
+        crossings[row] = meetings(table.curves[one[row]], table.curves[two[row]], tolerance)
     bent = (table.radius[one] > 0).astype(int) + (table.radius[two] > 0)
     for kind, rule in enumerate((_line_line, _line_circle, _circle_circle)):
-        rows = np.flatnonzero(bent == kind)
+        rows = np.flatnonzero((bent == kind) & ~smooth)
         with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-            crossings[rows] = rule(table, one[rows], two[rows], tolerance)
+            crossings[rows, :2] = rule(table, one[rows], two[rows], tolerance)
     ends = np.stack([table.start[one], table.end[one], table.start[two], table.end[two]], axis=1)
     return np.concatenate([crossings, ends], axis=1)
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import Protocol
+from typing import Protocol, runtime_checkable
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,7 +17,7 @@ Flags = NDArray[np.bool_]
 
 
 class Curve(Protocol):
-    """A smooth piece of an outline, run through by a parameter t from 0 to 1 at constant speed."""
+    """A smooth piece of an outline, run through by a parameter t from 0 to 1; lines and arcs at constant speed."""
 
     @property
     def start(self) -> Point: ...
@@ -30,7 +30,7 @@ class Curve(Protocol):
 
     @property
     def curvature(self) -> float:
-        """Signed, 1/m: positive where the curve turns left."""
+        """Signed, 1/m: positive where the curve turns left; the greatest in size where it changes."""
 
     def at(self, t: Floats) -> Floats:
         """Points, shape (..., 2), at the parameters t, shape (...)."""
@@ -44,12 +44,22 @@ class Curve(Protocol):
         """The piece between two parameters, t0 < t1."""
 
 
+@runtime_checkable
+class Bending(Protocol):
+    """A curve whose curvature is not even."""
+
+    def heading(self, from_start: bool) -> tuple[float, float]:
+        """Polar angle, in [0, 2 pi), and signed curvature, 1/m, with which it leaves its start, or its end."""
+
+
 SAME_DIRECTION = 1e-6
 """Two curves that leave a point at less than this angle form a cusp, radians."""
 
 
 def direction_and_bend(curve: Curve, from_start: bool) -> tuple[float, float]:
     """Polar angle, in [0, 2 pi), and signed curvature, 1/m, with which a curve leaves its start, or its end."""
+    if isinstance(curve, Bending):
+        return curve.heading(from_start)
     if isinstance(curve, Arc):
         quarter = math.copysign(math.pi / 2, curve.sweep)
         angle = curve.start_angle + quarter if from_start else curve.end_angle - quarter

@@ -11,10 +11,14 @@ from nightcap.geometry import polynomials
 from nightcap.geometry.curves import Flags, Floats
 from nightcap.geometry.errors import MeshError
 from nightcap.geometry.mesh import CurvedTriangles, Mesh, Triangulation
+from nightcap.geometry.polynomial_arc import PolynomialArc
 from nightcap.geometry.polynomials import EDGES
 
 ORDER = 8
 """Order of the polynomial edges. A chord of a twelfth of a circle leaves the circle by 1e-13 of its radius."""
+DEVIATION_GRADIENT = 200.0
+"""Gradient in a triangle, over the distance from the curve meant: polynomials of degree 8 are steeper than 2 * 8^2
+times their size nowhere (Markov 1889), and a blend of them into the triangle not by more than sqrt 2."""
 EVENNESS = 0.03
 """A first mesh is repaired until each Jacobian is proved to vary within a triangle by no more than this factor."""
 
@@ -62,7 +66,11 @@ def _edge_offsets(mesh: Triangulation, spans: Floats) -> tuple[Floats, Floats]:
         offsets[rows] = curve.at(first[:, None] + (last - first)[:, None] * t) - chord
         snapped = np.hypot(*(mesh.points[mesh.curve_edges[rows]] - ends).transpose(2, 0, 1)).max(axis=1)
         turn = curve.length * abs(curve.curvature) * np.abs(last - first)
-        defects[rows] = _interpolation_defect(turn) / abs(curve.curvature) + 2 * snapped
+        defects[rows] = 2 * snapped
+        if isinstance(curve, PolynomialArc):  # whose parts are such edges themselves
+            defects[rows] += DEVIATION_GRADIENT * curve.deviation
+        else:
+            defects[rows] += _interpolation_defect(turn) / abs(curve.curvature)
     return offsets, defects
 
 

@@ -12,6 +12,7 @@ from nightcap.geometry.case import Case
 from nightcap.geometry.crossing import CurveTable
 from nightcap.geometry.curves import Arc, Curve, Floats, Ints, Point, Segment
 from nightcap.geometry.painting import Drawing
+from nightcap.geometry.polynomial_arc import PolynomialArc
 
 
 @dataclass(frozen=True)
@@ -116,6 +117,8 @@ def nearest_on(curve: Curve, x: Floats) -> Floats:
     if isinstance(curve, Segment):
         along = np.clip((x - start) @ (end - start) / curve.length**2, 0.0, 1.0)
         return np.asarray(start + along[:, None] * (end - start))
+    if isinstance(curve, PolynomialArc):
+        return curve.at(curve.nearest(x))
     assert isinstance(curve, Arc)  # noqa: S101 - outlines are made of nothing else
     away = x - np.array(curve.centre)
     turned = np.sign(curve.sweep) * (np.arctan2(away[:, 1], away[:, 0]) - curve.start_angle)

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass, replace
 
 from nightcap.geometry.curves import Arc, Curve, Point, Segment
+from nightcap.geometry.polynomial_arc import PolynomialArc
 from nightcap.geometry.shapes import Circle, Outline, Polygon, Rectangle, Ring, Shape, Union
 
 
@@ -41,6 +42,8 @@ class Motion:
         """Where a curve goes, run through in the same sense."""
         if isinstance(curve, Segment):
             return Segment(self.point(curve.start), self.point(curve.end))
+        if isinstance(curve, PolynomialArc):
+            return PolynomialArc(tuple(self.point(at) for at in curve.control), curve.deviation)
         assert isinstance(curve, Arc)  # noqa: S101 - outlines are made of nothing else
         sign = -1.0 if self.mirrored else 1.0
         angles = (self.angle + sign * angle for angle in (curve.start_angle, curve.end_angle))

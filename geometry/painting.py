@@ -9,6 +9,7 @@ import numpy as np
 from nightcap.geometry.case import Case, Material, Shield
 from nightcap.geometry.curves import Arc, Floats, Point, Segment
 from nightcap.geometry.domain import Domain, shielded, unbounded
+from nightcap.geometry.polynomial_arc import PolynomialArc
 from nightcap.geometry.shapes import Outline, parts_of
 from nightcap.geometry.slab import Slab
 
@@ -102,7 +103,9 @@ def box(outlines: list[Outline]) -> tuple[Floats, Floats]:
 
 
 def _extremes(curve: object) -> list[Point]:
-    """Points of a curve among which are its extreme ones in x and y."""
+    """Points around a curve among which are its extreme ones in x and y; of a polynomial arc the control points."""
+    if isinstance(curve, PolynomialArc):
+        return list(curve.control)
     assert isinstance(curve, Segment | Arc)  # noqa: S101 - the shapes are made of nothing else
     points = [curve.start, curve.end]
     if isinstance(curve, Arc):
@@ -118,6 +121,8 @@ def _reach(outline: Outline, centre: Floats) -> float:
     reach = 0.0
     for curve in outline:
         reach = max(reach, float(np.hypot(*(np.array(curve.start) - centre))))
+        for point in curve.control if isinstance(curve, PolynomialArc) else ():
+            reach = max(reach, float(np.hypot(*(np.array(point) - centre))))
         if isinstance(curve, Arc):
             reach = max(reach, float(np.hypot(*(np.array(curve.centre) - centre))) + curve.radius)
     return reach

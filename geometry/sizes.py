@@ -7,9 +7,10 @@ import math
 import numpy as np
 
 from nightcap.geometry.corners import corner_sizes
-from nightcap.geometry.curves import SAME_DIRECTION, Floats, Ints, Segment, direction_and_bend
+from nightcap.geometry.curves import SAME_DIRECTION, Arc, Floats, Ints, direction_and_bend
 from nightcap.geometry.grading import Grading
 from nightcap.geometry.layout import Layout, Piece
+from nightcap.geometry.polynomial_arc import PolynomialArc
 from nightcap.geometry.tips import tips
 
 COARSE = 0.25
@@ -66,6 +67,7 @@ class _Sizes:
         self.sources = layout.points[list(at_corners)]
         self.source_size = np.array(list(at_corners.values()))
         self.arcs = np.array([_arc_row(piece) for piece in pieces])
+        self.is_smooth = np.array([isinstance(piece.curve, PolynomialArc) for piece in pieces])
         self.spread = SPREAD if any(piece.wall for piece in pieces) else np.inf
         self.ends = np.array([(piece.curve.start, piece.curve.end) for piece in pieces])
         self._shrink_at_tips(layout, list(at_corners))
@@ -87,7 +89,11 @@ class _Sizes:
         start, end = self.ends[owner].transpose(1, 0, 2)
         phi = angle + t * sweep
         on_arc = centre + radius[:, None] * np.stack([np.cos(phi), np.sin(phi)], axis=1)
-        return np.asarray(np.where((radius > 0)[:, None], on_arc, start + t[:, None] * (end - start)))
+        x = np.where((radius > 0)[:, None], on_arc, start + t[:, None] * (end - start))
+        for k in np.unique(owner[self.is_smooth[owner]]):
+            rows = np.flatnonzero(owner == k)
+            x[rows] = self.pieces[k].curve.at(t[rows])
+        return np.asarray(x)
 
     def at(self, owner: Ints, t: Floats) -> Floats:
         """(n,) edge lengths, m."""
@@ -116,7 +122,12 @@ class _Sizes:
         turned = np.sign(sweep) * (np.arctan2(away[:, 1], away[:, 0]) - angle)
         within = np.mod(turned, math.tau) <= np.abs(sweep)
         to_arc = np.where(within, np.abs(np.hypot(*away.T) - radius), to_ends)
-        return np.asarray(np.where(radius > 0, to_arc, to_line))
+        distance = np.where(radius > 0, to_arc, to_line)
+        for k in np.unique(other[self.is_smooth[other]]):
+            rows, curve = np.flatnonzero(other == k), self.pieces[k].curve
+            assert isinstance(curve, PolynomialArc)  # noqa: S101 - the others are not smooth in this sense
+            distance[rows] = np.hypot(*(curve.at(curve.nearest(x[rows])) - x[rows]).T)
+        return np.asarray(distance)
 
     def cells(self) -> tuple[Ints, Floats, Floats]:
         """Intervals of the pieces, halved until each is no longer than the edges asked for in its middle."""
@@ -138,9 +149,9 @@ class _Sizes:
 
 def _arc_row(piece: Piece) -> tuple[float, float, float, float, float]:
     curve = piece.curve
-    if isinstance(curve, Segment):
+    if not isinstance(curve, Arc):
         return (0.0, 0.0, 0.0, 0.0, 0.0)
-    return (*curve.centre, curve.radius, curve.start_angle, curve.sweep)  # type: ignore[attr-defined]
+    return (*curve.centre, curve.radius, curve.start_angle, curve.sweep)
 
 
 def _expand(lists: list[Ints], owner: Ints) -> tuple[Ints, Ints]:

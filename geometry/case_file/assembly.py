@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections import Counter
 from dataclasses import replace
+from pathlib import Path
 from typing import Any
 
 from nightcap.geometry.case import Case, Conductor, Dielectric, Expectation, Limits, Material
@@ -28,6 +29,7 @@ from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None) -> Case:
     """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file."""
     context: dict[str, Any] = {"unit": file_unit(tree), "values": values or Values()}
+    context["folder"] = Path(problems.source.file).parent
     context["materials"] = read_materials(tree.get("materials"), problems, context)
     entry = checked(CaseEntry, tree, "", problems, context)
     conductors, dielectrics = _drawn(tree, problems, context)

@@ -10,11 +10,13 @@ from nightcap.geometry.shapes.parallel import Grown
 from nightcap.geometry.shapes.polygon import Polygon
 from nightcap.geometry.shapes.rectangle import Rectangle
 from nightcap.geometry.shapes.sector import Sector
+from nightcap.geometry.shapes.smooth import Ellipse, Smooth, Traced
 from nightcap.geometry.shapes.union import Strands, Union, parts_of
 
 __all__ = [
     "BentStrip",
     "Circle",
+    "Ellipse",
     "Grown",
     "LappedStrip",
     "Outline",
@@ -23,7 +25,9 @@ __all__ = [
     "Ring",
     "Sector",
     "Shape",
+    "Smooth",
     "Strands",
+    "Traced",
     "Union",
     "chains",
     "parts_of",

@@ -59,6 +59,8 @@ def _shifted(curve: Curve, distance: float) -> Curve:
         if radius <= 1e-9 * curve.radius:
             raise ValueError("is thicker than a hollow of the outline is round")
         return Arc(curve.centre, radius, curve.start_angle, curve.end_angle)
+    if not isinstance(curve, Segment):
+        raise ValueError("is bent unevenly; draw the layer as a dielectric of its own")
     angle = direction_and_bend(curve, from_start=True)[0] - math.pi / 2
     shift = (distance * math.cos(angle), distance * math.sin(angle))
     return Segment(_sum(curve.start, shift), _sum(curve.end, shift))

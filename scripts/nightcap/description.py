@@ -11,7 +11,20 @@ from nightcap.geometry.case import Case, Coating, GroundPlane, Limits, Material,
 from nightcap.geometry.curves import Point
 from nightcap.geometry.layout import Layout
 from nightcap.geometry.motion import Moved
-from nightcap.geometry.shapes import BentStrip, Circle, LappedStrip, Polygon, Rectangle, Ring, Sector, Strands, Union
+from nightcap.geometry.shapes import (
+    BentStrip,
+    Circle,
+    Ellipse,
+    LappedStrip,
+    Polygon,
+    Rectangle,
+    Ring,
+    Sector,
+    Smooth,
+    Strands,
+    Traced,
+    Union,
+)
 from nightcap.geometry.slab import Slab
 from nightcap.geometry.strip import Strip
 from nightcap.geometry.symmetry import SymmetryLine
@@ -120,6 +133,23 @@ def _(strands: Strands) -> str:
 @describe.register
 def _(union: Union) -> str:
     return f"union of {'; '.join(describe(part) for part in union.parts)}"
+
+
+@describe.register
+def _(ellipse: Ellipse) -> str:
+    turned = f", turned {math.degrees(ellipse.angle):.6g} degrees" if ellipse.angle else ""
+    axes = f"{length_text(ellipse.width)} x {length_text(ellipse.height)}"
+    return f"ellipse, {axes}{turned}, at {_point(ellipse.centre)}"
+
+
+@describe.register
+def _(smooth: Smooth) -> str:
+    return f"smooth curve through {len(smooth.points)} points, from {_point(smooth.points[0])}"
+
+
+@describe.register
+def _(traced: Traced) -> str:
+    return f"outline of {_count(traced.curves, 'curve')}, from {_point(traced.curves[0].start)}"
 
 
 @describe.register

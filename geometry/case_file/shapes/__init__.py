@@ -15,7 +15,9 @@ from nightcap.geometry.case_file.shapes.polygons import PolygonKeys, RegularPoly
 from nightcap.geometry.case_file.shapes.rectangles import OvalKeys, RectangleKeys
 from nightcap.geometry.case_file.shapes.sectors import ArcStripKeys, SectorKeys
 from nightcap.geometry.case_file.shapes.slabs import SlabKeys
+from nightcap.geometry.case_file.shapes.smooth import EllipseKeys, SmoothKeys
 from nightcap.geometry.case_file.shapes.strips import StripKeys
+from nightcap.geometry.case_file.shapes.traced import OutlineKeys
 from nightcap.geometry.case_file.shapes.unions import LayeredStrandsKeys, StrandsKeys, UnionKeys
 from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.shapes import Shape, Union
@@ -33,6 +35,9 @@ SHAPES: dict[str, type[ShapeKeys]] = {
     "regular_polygon": RegularPolygonKeys,
     "slab": SlabKeys,
     "strip": StripKeys,
+    "ellipse": EllipseKeys,
+    "smooth": SmoothKeys,
+    "outline": OutlineKeys,
     "strands": StrandsKeys,
     "layered_strands": LayeredStrandsKeys,
     "union": UnionKeys,
