@@ -41,6 +41,17 @@ class Reduction:
         names = tuple(name for k, name in enumerate(groups) if k not in afloat)
         return cls(full, names, tie, afloat)
 
+    def potentials(self, full: Floats) -> Floats:
+        """(N, K) the potentials of all conductors for one volt on each that remains, from their matrix (N, N)."""
+        C = self.tie.T @ full @ self.tie
+        kept = np.setdiff1d(np.arange(len(C)), self.floating)
+        groups = np.zeros((len(C), len(kept)))
+        groups[kept] = np.eye(len(kept))
+        if self.floating:  # without charge
+            afloat = np.array(self.floating)
+            groups[afloat] = -np.linalg.solve(C[np.ix_(afloat, afloat)], C[np.ix_(afloat, kept)])
+        return np.asarray(self.tie @ groups)
+
     def apply(self, full: Bracket) -> Bracket:
         """The reduced bracket."""
         return full.congruent(self.tie).eliminate(self.floating)

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 from nightcap.geometry.case import Limits
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
+from nightcap.geometry.curves import Floats
 from nightcap.geometry.errors import LimitError, MeshError
 from nightcap.geometry.grading import grading_for
 from nightcap.geometry.layout import Layout
@@ -50,6 +51,8 @@ class Solution:
     """Rows of the matrix, after tying and floating."""
     bracket: Bracket
     """F/m."""
+    potentials: Floats
+    """(N, K) of all conductors but the reference, V, for one volt on each of ``conductors`` in turn."""
     full_conductors: tuple[str, ...]
     """Rows before tying and floating."""
     full_bracket: Bracket
@@ -119,6 +122,7 @@ def solve(
         reason=reason,
         conductors=reduction.names,
         bracket=reduction.apply(full),
+        potentials=reduction.potentials(full.value),
         full_conductors=reduction.full_names,
         full_bracket=full,
         fields=fields,

@@ -60,11 +60,15 @@ def _check_one(job: Job, drawings: Path | None) -> bool:
 def _draw(case: Case, problems: Sequence[Problem], folder: Path) -> bool:
     """Writes the drawing of a case; True if that went well."""
     from nightcap.outputs.sheet import FILES, write_sheet
+    from nightcap.work import internal_error
 
     try:
         write_sheet(case, problems, folder)
     except OSError as error:
         complain([f"{folder}: the drawing could not be written: {error.strerror or error}"])
+        return False
+    except Exception as error:  # one drawing must not stop the others
+        complain([f"{folder}: {internal_error(error)}"])
         return False
     show([f"  drawn in {folder / name}" for name in FILES])
     return True

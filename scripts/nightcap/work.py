@@ -80,8 +80,8 @@ class Work:
             ties=case.ties,
             progress=lambda r: tell(round_text(r)),
         )
-        drawing = Drawing(case, layout, tuple(solution.full_conductors), solution.fields) if self.pictures else None
-        return solved_result(job.name, case, solution, drawing)
+        drawing = Drawing(case, layout, solution.conductors, solution.potentials[:, 0], solution.fields)
+        return solved_result(job.name, case, solution, drawing if self.pictures else None)
 
     def _with_accuracy(self, case: Case) -> Case:
         return case if self.accuracy is None else replace(case, accuracy=self.accuracy)

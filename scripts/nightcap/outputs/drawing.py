@@ -30,7 +30,9 @@ class Drawing:
     case: Case
     layout: Layout
     conductors: tuple[str, ...]
-    """Names of the rows of the sampled fields."""
+    """Those that remain after ties and floating; the first is shown at one volt, the others at none."""
+    potentials: Floats
+    """(N,) what this means for each row of the sampled fields, V."""
     fields: Any
     """nightcap.solver.fields: has sample(subdivisions)."""
 

@@ -16,6 +16,7 @@ from nightcap.geometry.motion import Motion
 from nightcap.geometry.painting import Drawing, box
 from nightcap.geometry.shapes import Outline
 from nightcap.geometry.slab import Slab
+from nightcap.geometry.strip import Strip
 from nightcap.outputs.outlines import points_along
 
 
@@ -41,7 +42,7 @@ def measures(case: Case, drawing: Drawing) -> list[Measure]:
         names = [conductor.name for conductor in case.conductors]
         names += [case.outer_conductor or ""]
         one, two = (names[k] for k in gap.conductors)
-        found.append(Measure(f"narrowest gap, {one} to {two}", gap.ends))
+        found.append(Measure(f"narrowest gap between conductors, {one} to {two}", gap.ends))
     figures = [_caliper(f"smallest figure, {name}", outline) for name, outline in _figures(case, drawing)]
     layers = list(_layers(case))
     found += [min(kind, key=lambda measure: measure.length) for kind in (figures, layers) if kind]
@@ -52,6 +53,8 @@ def _figures(case: Case, drawing: Drawing) -> Iterator[tuple[str, Outline]]:
     """Conductors and dielectrics, without coatings and slabs."""
     slabs = {dielectric.name for dielectric in case.dielectrics if isinstance(dielectric.shape, Slab)}
     for drawn in drawing.drawn:
+        if drawn.conductor is not None and isinstance(case.conductors[drawn.conductor].shape, Strip):
+            continue  # of no thickness
         group, _, name = drawn.key.partition(".")
         if drawn.material is None or (group == "dielectrics" and name not in slabs):
             yield name, drawn.outline
@@ -64,7 +67,7 @@ def _layers(case: Case) -> Iterator[Measure]:
         points = np.concatenate([points_along(curve) for curve in inner])
         x, y = points[np.argmax(points[:, 0])].tolist()
         for layer in conductor.coatings:
-            yield Measure(f"thinnest layer, on {conductor.name}", ((x, y), (x + layer.thickness, y)))
+            yield Measure(f"thinnest coating, on {conductor.name}", ((x, y), (x + layer.thickness, y)))
             x += layer.thickness
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+from collections.abc import Sequence
 from pathlib import Path
 from textwrap import fill
 from typing import TYPE_CHECKING, Any
@@ -158,13 +159,13 @@ def filled(loops: list[Floats], **style: Any) -> Any:
 
 
 def _fields(axes: Axes, drawing: Drawing, view: View) -> None:
-    """Conductor 0 at 1 V, all others at 0 V."""
+    """The first conductor, with those tied to it, at 1 V; floating ones without charge; all others at 0 V."""
     sample = _sample(drawing)
     corners = sample.points[sample.triangles]
-    potential = sample.potential[0][sample.triangles]
+    potential = (drawing.potentials @ sample.potential)[sample.triangles]
     sheet = flux_sheet(
         corners.copy(),
-        sample.flux[0][sample.triangles],
+        (drawing.potentials @ sample.flux)[sample.triangles],
         sample.far,
         drawing.layout.rim,
         drawing.layout.size,
@@ -287,14 +288,27 @@ def _legend(drawing: Drawing) -> list[Any]:
         handles.append(Patch(facecolor=tone, edgecolor="0.5", hatch=hatch, label=label))
     if any(not line.is_electric for line in drawing.case.symmetry):
         handles.append(Line2D([], [], label="magnetic wall: mirror image beyond", **MAGNETIC))
-    driven = literal(drawing.conductors[0])
-    handles.append(Line2D([], [], color=HUE, linewidth=0.9, label=f"equipotentials: {driven} at 1 V, others 0 V"))
+    handles.append(Line2D([], [], color=HUE, linewidth=0.9, label=f"equipotentials: {_driven(drawing)}"))
     handles.append(
         Line2D(
             [], [], color="0.1", linewidth=0.6, linestyle=(0, (5, 3)), label="field lines, equal charge between them"
         )
     )
     return handles
+
+
+def _driven(drawing: Drawing) -> str:
+    """Who has which potential."""
+    first = drawing.conductors[0]
+    group = next((names for names in drawing.case.ties if first in names), (first,))
+    floating = [conductor.name for conductor in drawing.case.conductors if conductor.floating]
+    afloat = f", {_some(floating)} floating" if floating else ""
+    return f"{_some(group)} at 1 V{afloat}, others 0 V"
+
+
+def _some(names: Sequence[str]) -> str:
+    """Names, as far as a legend has room."""
+    return literal(", ".join(names[:3])) + (f" and {len(names) - 3} more" if len(names) > 3 else "")
 
 
 def _conductor_label(drawing: Drawing) -> str:

@@ -187,3 +187,15 @@ def test_check_says_what_it_understood(coax: Path, capsys: pytest.CaptureFixture
     assert "core: circle, diameter 2 mm, at (0 mm, 0 mm)" in out
     assert "shield 'screen', inside: circle, diameter 4 mm" in out
     assert "1 region," in out
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="needs a device that is always full")
+def test_a_full_disk_behind_the_screen_does_not_stop_the_work(tmp_path: Path) -> None:
+    wires = "{a: {shape: circle, radius: 1, at: [0, 0]}, b: {shape: circle, radius: 1, at: [3, 0]}}"
+    (tmp_path / "pair.yaml").write_text(f"conductors: {wires}\nboundary: {{kind: open}}\n")
+    command = [sys.executable, "-m", "nightcap", "run", str(tmp_path / "pair.yaml"), "--out", str(tmp_path / "out")]
+    with Path("/dev/full").open("w") as full:
+        done = subprocess.run(command, stdout=full, stderr=subprocess.PIPE, text=True, check=False, timeout=120)
+    assert done.returncode == 0
+    assert "no more lines here" in done.stderr
+    assert (tmp_path / "out" / "pair" / "result.json").exists()

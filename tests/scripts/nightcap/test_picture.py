@@ -22,7 +22,7 @@ from nightcap.solver.solve import solve
 
 def drawing(case: Case, layout: Layout) -> Drawing:
     solution = solve(layout, 1e-3)
-    return Drawing(case, layout, solution.full_conductors, solution.fields)
+    return Drawing(case, layout, solution.conductors, solution.potentials[:, 0], solution.fields)
 
 
 @pytest.mark.parametrize("example", [open_pair, screened_pair])

@@ -37,7 +37,7 @@ def lengths(case: Case) -> dict[str, float]:
 def test_measures_are_those_of_the_file() -> None:
     found = lengths(read_text(GOOD))
     assert_allclose(found["smallest figure, bar"], 0.4, rtol=1e-12)
-    assert_allclose(found["thinnest layer, on red"], 0.2, rtol=1e-12)
+    assert_allclose(found["thinnest coating, on red"], 0.2, rtol=1e-12)
     (gap,) = (what for what in found if what.startswith("narrowest gap"))
     assert gap.endswith("to bar")
 
@@ -121,3 +121,12 @@ def test_labels_do_not_cover_each_other() -> None:
     assert all(
         a[2] <= b[0] or b[2] <= a[0] or a[3] <= b[1] or b[3] <= a[1] for k, a in enumerate(boxes) for b in boxes[:k]
     )
+
+
+CASES = Path(__file__).parents[3] / "cases"
+
+
+def test_every_shipped_case_can_be_drawn(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["check", str(CASES), "--draw", str(tmp_path)]) == 0
+    assert "internal error" not in capsys.readouterr().err
+    assert len(list(tmp_path.rglob("drawing.svg"))) == len(list(CASES.rglob("*.yaml")))
