@@ -22,19 +22,29 @@ LARGEST = 1_000_000
 LONGEST_NAME = 60
 
 
-def read_materials(tree: Tree, problems: Problems, context: dict[str, Any]) -> Stock:
-    """The shipped materials and a file's own; notes every mistake in these."""
+def read_materials(tree: Tree, problems: Problems, context: dict[str, Any], beside: Stock | None) -> Stock:
+    """The shipped materials and a file's own; notes every mistake in these. beside : from a list in another file."""
+    if beside is not None:
+        return beside
+    return Stock(shipped()) if tree is None else _stock(tree, "materials", problems, context)
+
+
+def read_beside(tree: Tree, problems: Problems) -> Stock | None:
+    """The shipped materials and those in a file beside the case file, if it names one; notes every mistake in these.
+
+    They know no parameters of the case: variants share them, and so can other cases.
+    """
     if not isinstance(tree, str):
-        return Stock(shipped()) if tree is None else _stock(tree, "materials", problems, context)
+        return None
     path = Path(problems.source.file).parent / tree
     lines: dict[str, int] = {}
-    beside = Problems(Source(str(path), lines))
-    inside = _content(path, lines, beside)
+    found = Problems(Source(str(path), lines))
+    inside = _content(path, lines, found)
     if not lines:
-        problems.add("materials", f"the file {tree!r} {beside.found[0].text if beside.found else 'is empty'}")
+        problems.add("materials", f"the file {tree!r} {found.found[0].text if found.found else 'is empty'}")
         return Stock(shipped(), is_unreadable=True)
-    stock = _stock(inside, "", beside, context)
-    problems.found.extend(one for one in beside.found if one not in problems.found)
+    stock = _stock(inside, "", found, {})
+    problems.found.extend(found.found)
     return replace(stock, files=(str(path),), is_unreadable=not isinstance(inside, dict))
 
 

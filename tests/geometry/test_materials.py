@@ -12,7 +12,7 @@ from hypothesis import strategies as st
 from numpy.testing import assert_allclose
 
 from nightcap.geometry.case import OpenSpace
-from nightcap.geometry.case_file import read_case, read_text
+from nightcap.geometry.case_file import own_materials, read_case, read_text, read_variants
 from nightcap.geometry.errors import CaseError
 from nightcap.geometry.materials import Insulation, shipped
 from nightcap.geometry.mixing import LAWS, foam
@@ -176,6 +176,28 @@ def test_own_materials_in_full() -> None:
 
 def test_own_materials_may_use_parameters() -> None:
     assert material("material: wax", "parameters: {e: 2.2}\nmaterials: {wax: {permittivity: e + 0.1}}")[0] == 2.2 + 0.1
+
+
+def test_file_beside_is_read_once_for_all_variants(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    read: list[Path] = []
+    original = own_materials.compose
+    monkeypatch.setattr(own_materials, "compose", lambda text: (read.append(tmp_path), original(text))[1])
+    (tmp_path / "stock.materials.yaml").write_text("wax: {permittivity: 2.2}\n")
+    vary = "materials: stock.materials.yaml\nparameters: {e: 1}\nvary: {e: [1, 2, 3]}\nbackground: {permittivity: e}"
+    path = tmp_path / "case.yaml"
+    path.write_text(CASE.format(coating="material: wax", conductor="", rest=vary))
+    cases = read_variants(path)
+    assert [case.conductors[0].coatings[0].material.permittivity for case in cases] == [2.2] * 3
+    assert len(read) == 1
+
+
+def test_file_beside_knows_no_parameters(tmp_path: Path) -> None:
+    (tmp_path / "stock.materials.yaml").write_text("wax: {permittivity: e}\n")
+    path = tmp_path / "case.yaml"
+    rest = "materials: stock.materials.yaml\nparameters: {e: 2}"
+    path.write_text(CASE.format(coating="permittivity: e", conductor="", rest=rest))
+    with pytest.raises(CaseError, match=r"stock\.materials\.yaml:1: wax\.permittivity.*no parameters"):
+        read_case(path)
 
 
 def test_metals_of_everything_that_conducts() -> None:
