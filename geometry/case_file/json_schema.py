@@ -175,7 +175,7 @@ def _wire(definitions: Schema) -> Schema:
     circle = {key: value for key, value in definitions["conductor.circle"].items() if key != "anyOf"}
     plain = {"if": {"not": _needs("shape")}, "then": _ref("wire.circle")}
     wire["allOf"] = [*wire["allOf"], plain]
-    return {"wire": wire, "wire.circle": circle}
+    return {"wire": {**wire, "not": _needs("like")}, "wire.circle": circle}
 
 
 def _any_of(*kinds: Schema) -> Schema:

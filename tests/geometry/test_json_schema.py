@@ -108,6 +108,8 @@ WRONG = {
     "a coating of nothing": (", material: polyethylene", ""),
     "a key that is unknown beside like": ("like: red, at:", "like: red, att:"),
     "a key that is unknown in a wire": ("wire: {diameter: 0.3}", "wire: {diametr: 0.3}"),
+    "a key of another shape in a wire": ("wire: {diameter: 0.3}", "wire: {diameter: 0.3, width: 2}"),
+    "like in a wire": ("wire: {diameter: 0.3}", "wire: {diameter: 0.3, like: red}"),
     "a law that is unknown": ("material: polyethylene", "material: polyethylene, gas_fraction: 0.5, mixing: looyenge"),
     "a point of one number": ("at: [0, 0]", "at: [0]"),
     "a number as a mapping": ("thickness: 0.1", "thickness: {a: 1}"),
