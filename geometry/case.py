@@ -58,6 +58,8 @@ class Shield:
 
     shape: Shape
     name: str = "shield"
+    conductivity: float | None = None
+    """S/m, where the file gives it."""
 
 
 @dataclass(frozen=True)
@@ -72,6 +74,8 @@ class GroundPlane:
     at: float = 0.0
     """m."""
     name: str = "plane"
+    conductivity: float | None = None
+    """S/m, where the file gives it."""
 
 
 Boundary = Shield | OpenSpace | GroundPlane
@@ -175,6 +179,8 @@ class Case:
     symmetry: tuple[SymmetryLine, ...] = ()
     """At most one per axis. What lies beyond them is the mirror image of what is solved."""
     twist: Twist | None = None
+    files: tuple[str, ...] = ()
+    """Other files that the case file names and that were read for it."""
 
     @property
     def outer_conductor(self) -> str | None:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 from functools import cache
 from importlib import resources
@@ -15,11 +15,13 @@ import yaml
 class Quantity:
     """A property: the value that is used, and what its sources print."""
 
-    value: float | None = None
+    value: float
     range: tuple[float, float] | None = None
     frequency: float | None = None
     """Hz, where it matters and is known."""
     note: str = ""
+    source: str = ""
+    """Where value and range come from; of what ships, whether it was found or is from memory."""
 
 
 @dataclass(frozen=True)
@@ -27,13 +29,11 @@ class Insulation:
     """A dielectric."""
 
     name: str
-    permittivity: float
+    permittivity: Quantity
     """Relative to eps0."""
-    permittivity_range: tuple[float, float] | None = None
-    loss_tangent: Quantity = Quantity()
-    breakdown: Quantity = Quantity()
-    """Short-time strength of thin samples, kV/mm: no design value."""
-    source: str = ""
+    loss_tangent: Quantity | None = None
+    breakdown: Quantity | None = None
+    """Short-time strength of thin samples, kV/mm, its value the least that is printed: no design value."""
     aliases: tuple[str, ...] = ()
 
 
@@ -42,9 +42,8 @@ class Metal:
     """A conductor's material."""
 
     name: str
-    conductivity: float
+    conductivity: Quantity
     """S/m, at 20 degrees Celsius."""
-    source: str = ""
     aliases: tuple[str, ...] = ()
 
 
@@ -60,7 +59,7 @@ class Catalogue:
         return Catalogue({**self.insulations, **own.insulations}, {**self.metals, **own.metals})
 
     @classmethod
-    def of(cls, insulations: list[Insulation], metals: list[Metal]) -> Catalogue:
+    def of(cls, insulations: Iterable[Insulation], metals: Iterable[Metal]) -> Catalogue:
         """A catalogue in which every name and alias stands."""
         return cls(
             {word.lower(): one for one in insulations for word in (one.name, *one.aliases)},
@@ -73,33 +72,30 @@ def shipped() -> Catalogue:
     """The materials in materials.yaml beside this module."""
     text = resources.files("nightcap.geometry").joinpath("materials.yaml").read_text(encoding="utf-8")
     tree = yaml.safe_load(text)
-    insulations = [_insulation(name, entry) for name, entry in tree["insulations"].items()]
+    insulations = [
+        Insulation(
+            name,
+            _quantity(entry["permittivity"]),
+            _quantity(entry["loss_tangent"]) if "loss_tangent" in entry else None,
+            _quantity(entry["breakdown"]) if "breakdown" in entry else None,
+            tuple(entry.get("aliases", ())),
+        )
+        for name, entry in tree["insulations"].items()
+    ]
     metals = [
-        Metal(name, float(entry["conductivity"]), entry["source"], tuple(entry.get("aliases", ())))
+        Metal(name, _quantity(entry["conductivity"]), tuple(entry.get("aliases", ())))
         for name, entry in tree["metals"].items()
     ]
     return Catalogue.of(insulations, metals)
 
 
-def _insulation(name: str, entry: dict[str, Any]) -> Insulation:
-    permittivity = _quantity(entry["permittivity"])
-    assert permittivity.value is not None  # noqa: S101 - a test reads the shipped file
-    return Insulation(
-        name,
-        permittivity.value,
-        permittivity.range,
-        _quantity(entry.get("loss_tangent", {})),
-        _quantity(entry.get("breakdown", {})),
-        entry["source"],
-        tuple(entry.get("aliases", ())),
-    )
-
-
-def _quantity(entry: dict[str, Any]) -> Quantity:
+def _quantity(entry: Mapping[str, Any]) -> Quantity:
+    """A property as the file gives it; without a value, the lower end of its range is one."""
     low_high = entry.get("range")
     return Quantity(
-        None if entry.get("value") is None else float(entry["value"]),
+        float(entry["value"] if "value" in entry else entry["range"][0]),
         None if low_high is None else (float(low_high[0]), float(low_high[1])),
         None if entry.get("frequency") is None else float(entry["frequency"]),
         entry.get("note", ""),
+        entry["source"],
     )

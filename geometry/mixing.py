@@ -49,6 +49,10 @@ LAWS: dict[str, Law] = {
 
 
 def foam(permittivity: float, loss_tangent: float, gas: float, law: str) -> tuple[float, float]:
-    """Relative permittivity and loss tangent of a foam."""
+    """Relative permittivity and loss tangent of a foam, from those of its solid.
+
+    The permittivity is that of the law for a solid without loss, as the sources print it: what loss adds to it is of
+    second order, and is left out everywhere. The loss tangent is that of the law for a complex permittivity.
+    """
     mixed = LAWS[law](complex(permittivity, -permittivity * loss_tangent), gas)
-    return float(mixed.real), float(-mixed.imag / mixed.real)
+    return float(LAWS[law](permittivity, gas).real), float(-mixed.imag / mixed.real)

@@ -14,7 +14,8 @@ from nightcap.geometry.case_file.constructions import read_constructions
 from nightcap.geometry.case_file.constructions.built import Built
 from nightcap.geometry.case_file.entries import ConductorKeys
 from nightcap.geometry.case_file.layers import check_coatings, read_coatings
-from nightcap.geometry.case_file.materials import MaterialKeys, read_materials
+from nightcap.geometry.case_file.materials import MaterialKeys, Stock
+from nightcap.geometry.case_file.own_materials import read_materials
 from nightcap.geometry.case_file.problems import Problems, under
 from nightcap.geometry.case_file.quantities import LENGTHS
 from nightcap.geometry.case_file.schema import CaseEntry, ExpectEntry, LimitsEntry, checked
@@ -26,11 +27,16 @@ from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.constants import VACUUM_PERMITTIVITY
 
 
-def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None) -> Case:
-    """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file."""
+def assemble(
+    tree: dict[str, Tree], name: str, problems: Problems, values: Values | None = None, beside: Stock | None = None
+) -> Case:
+    """Builds the case with the values of its parameters. Raises CaseError with every mistake of the file.
+
+    beside : the materials, if they are listed in another file.
+    """
     context: dict[str, Any] = {"unit": file_unit(tree), "values": values or Values()}
     context["folder"] = Path(problems.source.file).parent
-    context["materials"] = read_materials(tree.get("materials"), problems, context)
+    context["materials"] = stock = read_materials(tree.get("materials"), problems, context, beside)
     entry = checked(CaseEntry, tree, "", problems, context)
     conductors, dielectrics = _drawn(tree, problems, context)
     background = _background(tree.get("background"), problems, context)
@@ -57,6 +63,7 @@ def assemble(tree: dict[str, Tree], name: str, problems: Problems, values: Value
         source=problems.source,
         symmetry=symmetry,
         twist=twist,
+        files=stock.files,
     )
     if not case.reference:
         case = replace(case, reference=case.outer_conductor or conductors[-1].name)

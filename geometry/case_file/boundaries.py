@@ -7,6 +7,7 @@ from typing import Any
 from pydantic import Field
 
 from nightcap.geometry.case import Boundary, GroundPlane, OpenSpace, Shield
+from nightcap.geometry.case_file.materials import MetalKeys
 from nightcap.geometry.case_file.problems import Problems, listed, one_of, under
 from nightcap.geometry.case_file.quantities import Length, PointOf, PositiveLength
 from nightcap.geometry.case_file.schema import Entry, Text, checked
@@ -15,14 +16,14 @@ from nightcap.geometry.case_file.yaml_tree import Tree
 from nightcap.geometry.shapes import Rectangle, chains
 
 
-class ShieldKeys(Entry):
+class ShieldKeys(MetalKeys):
     """A grounded conductor whose inside is the shape."""
 
     kind: Text = Field(description="Word for the boundary.")
     name: Text = Field("shield", description="What it is called in results.")
 
 
-class BoxKeys(Entry):
+class BoxKeys(MetalKeys):
     """A rectangular shield."""
 
     kind: Text = Field(description="Word for the boundary.")
@@ -38,7 +39,7 @@ class OpenKeys(Entry):
     kind: Text = Field(description="Word for the boundary.")
 
 
-class GroundPlaneKeys(Entry):
+class GroundPlaneKeys(MetalKeys):
     """A grounded plane below the layout."""
 
     kind: Text = Field(description="Word for the boundary.")
@@ -51,12 +52,14 @@ def _shield(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) 
     if read and len(chains(read[1].outline())) > 1:
         problems.add(under(path, "shape"), "the inside of a shield has no hole; draw what is in it as a conductor")
         return None
-    return Shield(read[1], read[0].name) if read else None
+    return Shield(read[1], read[0].name, read[0].siemens_per_metre()) if read else None
 
 
 def _box(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
     entry = checked(BoxKeys, tree, path, problems, context)
-    return Shield(Rectangle(entry.at, entry.width, entry.height), entry.name) if entry else None
+    if entry is None:
+        return None
+    return Shield(Rectangle(entry.at, entry.width, entry.height), entry.name, entry.siemens_per_metre())
 
 
 def _open(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
@@ -65,7 +68,7 @@ def _open(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) ->
 
 def _ground_plane(tree: Tree, path: str, problems: Problems, context: dict[str, Any]) -> Boundary | None:
     entry = checked(GroundPlaneKeys, tree, path, problems, context)
-    return GroundPlane(entry.at, entry.name) if entry else None
+    return GroundPlane(entry.at, entry.name, entry.siemens_per_metre()) if entry else None
 
 
 KEYS: dict[str, type[Entry]] = {

@@ -8,6 +8,8 @@ from dataclasses import dataclass, replace
 from nightcap.geometry.case import Case, Limits, Source
 from nightcap.geometry.case_file.assembly import assemble, file_unit
 from nightcap.geometry.case_file.expansion import expand
+from nightcap.geometry.case_file.materials import Stock
+from nightcap.geometry.case_file.own_materials import read_beside
 from nightcap.geometry.case_file.parameters import Parameters, read_parameters
 from nightcap.geometry.case_file.problems import Problems, nearest, under
 from nightcap.geometry.case_file.variants import Variant, read_variants_of, varied_names
@@ -27,12 +29,14 @@ class Document:
     parameters: Parameters
     variants: tuple[Variant, ...]
     """At least one; a file that varies nothing, or wrongly, has one without name and values."""
+    beside: Stock | None = None
+    """The materials, if they are listed in another file."""
 
     def case(self, variant: Variant) -> Case:
         """The case of one variant. Raises CaseError with every mistake of the file and of this variant."""
         problems = Problems(self.source, list(self.problems))
         values = self.parameters.values(variant.values, problems)
-        case = assemble(self.tree, self.name, problems, values)
+        case = assemble(self.tree, self.name, problems, values, self.beside)
         self._check_use(variant, problems)
         problems.raise_any()
         return replace(
@@ -77,7 +81,8 @@ def document_of(text: str, file: str = "", name: str = "case") -> Document:
     plain = expand(tree, problems)
     parameters = read_parameters(plain.get("parameters"), file_unit(plain), problems, varied_names(plain.get("vary")))
     variants = read_variants_of(plain.get("vary"), parameters, _most_variants(plain), problems)
-    return Document(name, plain, problems.source, tuple(problems.found), parameters, variants or (Variant(),))
+    beside = read_beside(plain.get("materials"), problems)
+    return Document(name, plain, problems.source, tuple(problems.found), parameters, variants or (Variant(),), beside)
 
 
 def _most_variants(tree: dict[str, Tree]) -> int:

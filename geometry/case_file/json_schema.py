@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import types
-from collections.abc import Iterable, Mapping
+from collections.abc import Mapping
+from itertools import combinations
 from typing import Any, Literal, Union, get_args, get_origin
 
 from pydantic import WithJsonSchema
@@ -16,16 +17,25 @@ from nightcap.geometry.case_file.constructions.board import LayerEntry, MaskEntr
 from nightcap.geometry.case_file.constructions.groups import BeltEntry, FillerEntry
 from nightcap.geometry.case_file.constructions.sheaths import DrainEntry
 from nightcap.geometry.case_file.entries import CoatingEntry, ConductorKeys
-from nightcap.geometry.case_file.materials import MaterialKeys, OwnMaterialEntry
+from nightcap.geometry.case_file.likeness import ALTERNATIVES
+from nightcap.geometry.case_file.material_entries import PROPERTIES, OwnMaterialEntry
+from nightcap.geometry.case_file.materials import MaterialKeys
+from nightcap.geometry.case_file.own_materials import GROUPS as MATERIAL_GROUPS
 from nightcap.geometry.case_file.schema import CaseEntry, Entry, ExpectEntry, LimitsEntry, words_of
 from nightcap.geometry.case_file.shapes import SHAPES, combined, words_for
 from nightcap.geometry.case_file.symmetry import LineKeys
 from nightcap.geometry.case_file.twist import TwistKeys
+from nightcap.geometry.materials import shipped
 
 DIALECT = "https://json-schema.org/draft/2020-12/schema"
 Schema = dict[str, Any]
 NUMBER: Schema = {"title": "number or formula", "type": ["number", "string"]}
 LIKE: Schema = {"type": "string", "description": "Another entry of the same group; the keys given here go on top."}
+SUGGESTIONS = {
+    "material": sorted({one.name for one in shipped().insulations.values()}, key=str.lower),
+    "metal": sorted({one.name for one in shipped().metals.values()}, key=str.lower),
+}
+"""Words that an editor offers; others are allowed, too."""
 PLAIN = {str: "string", bool: "boolean", int: "integer", float: "number"}
 
 
@@ -37,7 +47,7 @@ def case_schema() -> Schema:
         model.__name__: _of(model)
         for model in (
             BeltEntry, CoatingEntry, DrainEntry, ExpectEntry, FillerEntry, LayerEntry, LimitsEntry, LineKeys, MaskEntry,
-            MaterialKeys, OwnMaterialEntry, RangeKeys, ToleranceKeys, TraceEntry, TwistKeys,
+            MaterialKeys, OwnMaterialEntry, *PROPERTIES, RangeKeys, ToleranceKeys, TraceEntry, TwistKeys,
         )
     }  # fmt: skip
     for group, own in shapes.items():
@@ -49,8 +59,9 @@ def case_schema() -> Schema:
     definitions |= _chosen_by("shape", "shield", shields, like=False)
     definitions["boundary"]["properties"]["kind"]["enum"].append("shield")
     definitions["boundary"]["allOf"].append(_if("kind", "shield", "shield"))
-    definitions["wire"] = {**definitions["conductor"], "anyOf": [{}]}
+    definitions |= _wire(definitions)
     head = {"$schema": DIALECT, "title": "nightcap case file"}
+    whole["description"] = "A cross-section of conductors and insulation, in its boundary."
     return {**head, **whole, "anyOf": [_needs("conductors"), _needs("constructions")], "$defs": definitions}
 
 
@@ -62,11 +73,27 @@ def _of(model: type[Entry]) -> Schema:
     required = [info.alias or name for name, info in model.model_fields.items() if info.is_required()]
     text = (model.__doc__ or "").strip().partition("\n")[0]
     schema = {"type": "object", "description": text, "properties": properties, "additionalProperties": False}
-    return {**schema, "required": required} if required else schema
+    rules = _rules(model, properties)
+    return {**schema, **({"required": required} if required else {}), **({"allOf": rules} if rules else {})}
+
+
+def _rules(model: type[Entry], properties: Mapping[str, Schema]) -> list[Schema]:
+    """What keys must or must not stand together; what is missing may come from 'like'."""
+    pairs = (pair for group in ALTERNATIVES for pair in combinations(group, 2) if set(pair) <= properties.keys())
+    rules: list[Schema] = [{"not": _needs(*pair)} for pair in pairs]
+    if issubclass(model, MaterialKeys):
+        rules.append({"anyOf": [_needs("permittivity"), _needs("material"), _needs("like")]})
+    if issubclass(model, OwnMaterialEntry):
+        rules.append({"oneOf": [_needs("permittivity"), _needs("conductivity")]})
+    return rules
 
 
 def _property(key: str, info: FieldInfo) -> Schema:
-    return {**_taken(key, info), "description": info.description or ""}
+    taken = _taken(key, info)
+    if key in SUGGESTIONS and taken.get("type") == "string":
+        taken = {"anyOf": [{"enum": SUGGESTIONS[key]}, taken]}
+    shown = {"default": info.default} if isinstance(info.default, str | bool) and info.default != "" else {}
+    return {**taken, **shown, "description": info.description or ""}
 
 
 def _taken(key: str, info: FieldInfo) -> Schema:
@@ -98,7 +125,11 @@ def _ref(name: str) -> Schema:
 
 
 def _mapping(name: str) -> Schema:
-    return {"type": "object", "additionalProperties": _ref(name)}
+    return _mapping_of(_ref(name))
+
+
+def _mapping_of(schema: Schema) -> Schema:
+    return {"type": "object", "additionalProperties": schema}
 
 
 def _list(name: str) -> Schema:
@@ -125,6 +156,8 @@ def _chosen_by(key: str, group: str, models: Mapping[str, type[Entry]], *, like:
     definitions = {group: entry}
     if like:
         properties["like"] = LIKE
+        known = {"like", *(word for model in models.values() for word in words_of(model))}
+        entry["propertyNames"] = {"enum": sorted(known)}
     for word, model in models.items():
         schema = _of(model)
         schema["properties"][key] = {"const": word, "description": description}
@@ -136,10 +169,21 @@ def _chosen_by(key: str, group: str, models: Mapping[str, type[Entry]], *, like:
     return definitions
 
 
+def _wire(definitions: Schema) -> Schema:
+    """Definitions for the wires of constructions: conductors, circles unless they say something else."""
+    wire = {key: value for key, value in definitions["conductor"].items() if key != "anyOf"}
+    circle = {key: value for key, value in definitions["conductor.circle"].items() if key != "anyOf"}
+    plain = {"if": {"not": _needs("shape")}, "then": _ref("wire.circle")}
+    wire["allOf"] = [*wire["allOf"], plain]
+    return {"wire": {**wire, "not": _needs("like")}, "wire.circle": circle}
+
+
 def _any_of(*kinds: Schema) -> Schema:
     return {"anyOf": list(kinds)}
 
 
+OWN_MATERIALS = _mapping("OwnMaterialEntry")
+GROUPED_MATERIALS: Schema = {"propertyNames": {"enum": list(MATERIAL_GROUPS)}, **_mapping_of(OWN_MATERIALS)}
 HOLDS: dict[str, Schema] = {
     "parameters": {"type": "object", "additionalProperties": NUMBER},
     "vary": {
@@ -149,7 +193,7 @@ HOLDS: dict[str, Schema] = {
     "conductors": _mapping("conductor"),
     "dielectrics": _mapping("dielectric"),
     "constructions": _mapping("construction"),
-    "materials": _any_of({"type": "string"}, _mapping("OwnMaterialEntry")),
+    "materials": _any_of({"type": "string"}, OWN_MATERIALS, GROUPED_MATERIALS),
     "background": _ref("MaterialKeys"),
     "boundary": _ref("boundary"),
     "symmetry": _list("LineKeys"),
@@ -170,11 +214,3 @@ HOLDS: dict[str, Schema] = {
     "tolerance": NUMBER,
 }
 """What the keys hold whose entries are read by themselves."""
-
-
-def described(schema: Schema, path: str = "") -> Iterable[tuple[str, Schema]]:
-    """Every property of a schema with its path."""
-    for key, value in schema.get("properties", {}).items():
-        yield f"{path}.{key}", value
-    for name, value in schema.get("$defs", {}).items():
-        yield from described(value, f"{path}#{name}")

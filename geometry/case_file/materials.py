@@ -1,18 +1,19 @@
-"""Materials in a case file: by numbers or by name, foams, and the file's own."""
+"""Materials in a case file: by numbers or by name, and foams."""
 
 from __future__ import annotations
 
-from pathlib import Path
-from typing import Annotated, Any
+from dataclasses import dataclass
+from typing import Annotated
 
 from pydantic import BeforeValidator, Field, PrivateAttr, ValidationInfo, WithJsonSchema, model_validator
+from pydantic_core import PydanticCustomError
 
 from nightcap.geometry.case import Material
-from nightcap.geometry.case_file.problems import Problems, nearest, one_of, under
+from nightcap.geometry.case_file.problems import nearest, one_of
 from nightcap.geometry.case_file.quantities import Conductivity, Fraction, LossTangent, Permittivity
-from nightcap.geometry.case_file.schema import Entry, Text, checked
-from nightcap.geometry.case_file.yaml_tree import Planter, Tree, UnreadableError, compose
-from nightcap.geometry.materials import Catalogue, Insulation, Metal, Quantity, shipped
+from nightcap.geometry.case_file.schema import Entry, Text
+from nightcap.geometry.case_file.values import FOLLOWS
+from nightcap.geometry.materials import Catalogue, Insulation, shipped
 from nightcap.geometry.mixing import LAWS, foam
 
 DEFAULT_LAW = "looyenga"
@@ -24,10 +25,28 @@ def _law(value: object) -> str:
     return value
 
 
-def catalogue_of(info: ValidationInfo) -> Catalogue:
+@dataclass(frozen=True)
+class Stock:
     """The materials that a file may name."""
-    found: Catalogue | None = (info.context or {}).get("materials")
-    return found or shipped()
+
+    catalogue: Catalogue
+    files: tuple[str, ...] = ()
+    """Other files that list some of them."""
+    wrong: frozenset[str] = frozenset()
+    """Names, lower case, of materials that the file adds, but wrongly."""
+    is_unreadable: bool = False
+    """True if a list could not be read, so that any name may be in it."""
+
+    def check(self, word: str) -> None:
+        """Keeps quiet about a name that is unknown because of another mistake."""
+        if self.is_unreadable or word.lower() in self.wrong:
+            raise PydanticCustomError(FOLLOWS, "names a material that is wrong itself")
+
+
+def stock_of(info: ValidationInfo) -> Stock:
+    """The materials that the file may name."""
+    found = (info.context or {}).get("materials")
+    return found if isinstance(found, Stock) else Stock(shipped())
 
 
 class MaterialKeys(Entry):
@@ -46,24 +65,27 @@ class MaterialKeys(Entry):
 
     @model_validator(mode="after")
     def _resolved(self, info: ValidationInfo) -> MaterialKeys:
-        permittivity, loss = self.permittivity, self.loss_tangent
+        permittivity, loss, name = self.permittivity, self.loss_tangent, self.material
         if permittivity is None:
-            known = self._known(catalogue_of(info))
-            permittivity = known.permittivity
-            loss = (known.loss_tangent.value or 0.0) if loss is None else loss
-        name = self.material
+            known = self._known(stock_of(info))
+            permittivity, name = known.permittivity.value, known.name
+            loss = known.loss_tangent.value if loss is None and known.loss_tangent else loss
+        if self.gas_fraction is None and "mixing" in self.model_fields_set:
+            raise ValueError("mixing is for foams; give their gas_fraction, too")
         if self.gas_fraction is not None:
             permittivity, loss = foam(permittivity, loss or 0.0, self.gas_fraction, self.mixing)
             name = f"{name}{', ' if name else ''}{100 * self.gas_fraction:.3g} % gas"
         self._record = Material(permittivity, loss or 0.0, name)
         return self
 
-    def _known(self, catalogue: Catalogue) -> Insulation:
+    def _known(self, stock: Stock) -> Insulation:
         if not self.material:
             raise ValueError("needs permittivity, or material with the name of a known one")
-        found = catalogue.insulations.get(self.material.lower())
+        insulations = stock.catalogue.insulations
+        found = insulations.get(self.material.lower())
         if found is None:
-            near = nearest(self.material, catalogue.insulations)
+            stock.check(self.material)
+            near = nearest(self.material, insulations)
             raise ValueError(
                 f"material {self.material!r} is not known{near}; give its permittivity,"
                 " or see 'nightcap materials' for the names"
@@ -86,64 +108,14 @@ class MetalKeys(Entry):
     def _found(self, info: ValidationInfo) -> MetalKeys:
         self._value = self.conductivity
         if self.metal and self.conductivity is None:
-            metals = catalogue_of(info).metals
+            stock = stock_of(info)
+            metals = stock.catalogue.metals
             if self.metal.lower() not in metals:
+                stock.check(self.metal)
                 raise ValueError(f"metal {one_of(self.metal, metals)}; or give its conductivity in S/m")
-            self._value = metals[self.metal.lower()].conductivity
+            self._value = metals[self.metal.lower()].conductivity.value
         return self
 
     def siemens_per_metre(self) -> float | None:
         """Its conductivity, where one is given, S/m."""
         return self._value
-
-
-class OwnMaterialEntry(Entry):
-    """A material that a file adds: a dielectric with a permittivity, or a metal with a conductivity."""
-
-    permittivity: Permittivity | None = Field(None, description="Relative permittivity, at least 1.")
-    loss_tangent: LossTangent = Field(0.0, description="Loss tangent.")
-    conductivity: Conductivity | None = Field(None, description="S/m, of a metal.")
-    source: Text = Field("", description="Where the numbers come from.")
-
-    @model_validator(mode="after")
-    def _one_kind(self) -> OwnMaterialEntry:
-        if (self.permittivity is None) == (self.conductivity is None):
-            raise ValueError("needs exactly one of permittivity, for a dielectric, and conductivity, for a metal")
-        return self
-
-
-def read_materials(tree: Tree, problems: Problems, context: dict[str, Any]) -> Catalogue:
-    """The shipped materials and a file's own, which are listed in it or in a file beside it."""
-    path = "materials"
-    if isinstance(tree, str):
-        tree = _beside(tree, problems)
-    if tree is None:
-        return shipped()
-    if not isinstance(tree, dict):
-        problems.add(path, "must be a mapping from names to materials, or the name of a file that holds one")
-        return shipped()
-    insulations, metals = [], []
-    for name, entry in tree.items():
-        read = checked(OwnMaterialEntry, entry, under(path, name), problems, context)
-        if read and read.permittivity is not None:
-            loss = Quantity(read.loss_tangent)
-            insulations.append(Insulation(name, read.permittivity, None, loss, source=read.source))
-        elif read and read.conductivity is not None:
-            metals.append(Metal(name, read.conductivity, read.source))
-    return shipped().with_own(Catalogue.of(insulations, metals))
-
-
-def _beside(name: str, problems: Problems) -> Tree:
-    """The content of a YAML file in the folder of the case file; None after noting that it is none."""
-    path = Path(problems.source.file).parent / name
-    lines: dict[str, int] = {}
-    try:
-        node = compose(path.read_text(encoding="utf-8-sig"))
-        return Planter(lines, problems).tree(node) if node is not None else {}
-    except OSError as error:
-        problems.add("materials", f"the file {name!r} cannot be read: {error.strerror or error}")
-    except (UnicodeDecodeError, ValueError) as error:
-        problems.add("materials", f"the file {name!r} is not text in UTF-8: {error}")
-    except UnreadableError as error:
-        problems.add("materials", f"the file {name!r}, line {error.line}: {error.text}")
-    return None

@@ -186,3 +186,4 @@ Duration = Annotated[
     _takes("seconds, or with s, min, h", "number", "string"),
 ]
 Conductivity = Annotated[float, BeforeValidator(_within({}, 1.0, 1e9, "58e6")), NUMBER]
+Strength = Annotated[float, BeforeValidator(_within({}, 1e-3, 1e5, "20")), NUMBER]

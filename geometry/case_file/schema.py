@@ -212,6 +212,6 @@ def _nested(model: type[Entry], loc: tuple[str | int, ...]) -> type[Entry]:
         if isinstance(key, int):
             continue
         field = next(f for name, f in model.model_fields.items() if key in (name, f.alias))
-        inner = [kind for kind in (field.annotation, *get_args(field.annotation)) if isinstance(kind, type)]
-        model = next((kind for kind in inner if issubclass(kind, Entry)), model)
+        kinds = [getattr(kind, "__origin__", kind) for kind in (field.annotation, *get_args(field.annotation))]
+        model = next((kind for kind in kinds if isinstance(kind, type) and issubclass(kind, Entry)), model)
     return model

@@ -37,6 +37,15 @@ examples:
 """
 
 
+MATERIALS_EXAMPLES = """\
+examples:
+  nightcap materials            all of them, with range, frequency and source
+  nightcap materials PVC        those with this word in their name
+  in a case file:   {thickness: 0.4, material: polyethylene, gas_fraction: 50 %}
+                    {shape: circle, awg: 24, metal: tinned copper}
+  of your own:      materials: {wax: {permittivity: 2.2, loss_tangent: 1e-3}}
+                    materials: stock.materials.yaml      a file beside the case
+"""
 SCHEMA_EXAMPLES = """\
 examples:
   nightcap schema > nightcap.schema.json
@@ -107,10 +116,13 @@ def _add_materials(commands: argparse._SubParsersAction[argparse.ArgumentParser]
         "materials",
         help="list the materials that a case file may name",
         description="Lists insulations and metals with their values and where these come from.",
+        epilog=MATERIALS_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
     )
     materials.add_argument(
         "word", nargs="?", default="", metavar="WORD", help="only those with this word in their name"
     )
+    materials.add_argument("--json", action="store_true", help="as JSON, with everything that is known of each")
 
 
 def _add_paths(parser: argparse.ArgumentParser) -> None:

@@ -50,7 +50,7 @@ def _check(options: Namespace) -> bool:
 def _materials(options: Namespace) -> bool:
     from nightcap.catalogue import list_materials
 
-    return list_materials(options.word)
+    return list_materials(options.word, as_json=options.json)
 
 
 def _schema(_: Namespace) -> bool:

@@ -41,14 +41,15 @@ def description(case: Case, layout: Layout) -> Iterator[str]:
     yield from _parameters(case)
     yield "  conductors"
     for conductor in case.conductors:
-        yield f"    {conductor.name}: {describe(conductor.shape)}{'; floating' if conductor.floating else ''}"
+        also = _metal(conductor.conductivity) + ("; floating" if conductor.floating else "")
+        yield f"    {conductor.name}: {describe(conductor.shape)}{also}"
         yield from (f"      {_coating(coating)}" for coating in conductor.coatings)
     if case.dielectrics:
         yield "  dielectrics, later over earlier"
     for dielectric in case.dielectrics:
         yield f"    {dielectric.name}: {describe(dielectric.shape)}; {_material(dielectric.material)}"
     yield f"  background: {_material(case.background)}"
-    yield f"  boundary: {describe(case.boundary)}"
+    yield f"  boundary: {describe(case.boundary)}{_metal(getattr(case.boundary, 'conductivity', None))}"
     yield from (f"  {_line(line)}" for line in case.symmetry)
     yield f"  reference: {', '.join(case.reference_pieces)}"
     yield from (f"  tied together: {', '.join(group)}" for group in case.ties if case.reference not in group)
@@ -233,6 +234,10 @@ def _material(material: Material) -> str:
     if material.loss_tangent:
         text += f", loss tangent {material.loss_tangent:.3g}"
     return f"{material.name} ({text})" if material.name else text
+
+
+def _metal(conductivity: float | None) -> str:
+    return "" if conductivity is None else f"; {conductivity / 1e6:.4g} MS/m"
 
 
 def _limits(limits: Limits) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -10,6 +11,8 @@ from pathlib import Path
 from nightcap.geometry.errors import UsageError
 
 SUFFIXES = (".yaml", ".yml")
+MATERIALS = re.compile(r"(.*\.)?materials\.ya?ml", re.IGNORECASE)
+"""Names of files that list materials for the cases beside them."""
 
 
 @dataclass(frozen=True)
@@ -83,11 +86,14 @@ def _jobs_of(path: str) -> Iterator[Job]:
 
 
 def _jobs_below(folder: Path) -> Iterator[Job]:
-    """Case files below a folder; what is hidden (a leading dot) is left alone, links to folders are not followed."""
+    """Case files below a folder; links to folders are not followed.
+
+    What is hidden (a leading dot) and lists of materials are left alone.
+    """
     for root, folders, files in os.walk(folder, onerror=_refuse_folder):
         folders[:] = sorted(name for name in folders if not name.startswith("."))
         for name in sorted(files):
-            if name.lower().endswith(SUFFIXES) and not name.startswith("."):
+            if name.lower().endswith(SUFFIXES) and not name.startswith(".") and not MATERIALS.fullmatch(name):
                 path = Path(root, name)
                 yield Job(str(path), path.relative_to(folder).with_suffix("").as_posix())
 

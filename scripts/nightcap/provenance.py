@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import hashlib
 import platform
+from collections.abc import Sequence
 from datetime import UTC, datetime
 from importlib.metadata import PackageNotFoundError, version
+from pathlib import Path
 from typing import Any
 
 from nightcap import __version__
@@ -27,6 +29,11 @@ def provenance(path: str, started: datetime, seconds: float) -> dict[str, Any]:
         "started": started.astimezone(UTC).isoformat(timespec="seconds"),
         "seconds": round(seconds, 3),
     }
+
+
+def other_files(paths: Sequence[str]) -> dict[str, Any]:
+    """From which bytes of other files a result comes; nothing if the case file names none."""
+    return {"other_files_sha256": {Path(path).name: _sha256(path) for path in paths}} if paths else {}
 
 
 def _version(name: str) -> str | None:

@@ -13,7 +13,7 @@ from typing import Any
 from nightcap.geometry.case import Case
 from nightcap.geometry.errors import CaseError, NightcapError, Problem
 from nightcap.jobs import Job
-from nightcap.provenance import provenance
+from nightcap.provenance import other_files, provenance
 from nightcap.result import Result, failed_result, solved_result
 
 Tell = Callable[[str], None]
@@ -39,7 +39,7 @@ class Work:
         result = replace(
             result,
             seconds={**result.seconds, "total": seconds},
-            provenance=provenance(job.path, started, seconds),
+            provenance={**provenance(job.path, started, seconds), **result.provenance},
         )
         result = write_outputs(_marked(result, job), self.out / job.folder, job.path, pictures=self.pictures)
         return replace(result, drawing=None)
@@ -57,7 +57,7 @@ class Work:
         case = None
         try:
             case = self._with_accuracy(_read(job))
-            return self._solved(job, case, tell)
+            return replace(self._solved(job, case, tell), provenance=other_files(case.files))
         except CaseError as error:
             return failed_result(job.name, error.problems, case)
         except (NightcapError, OSError, MemoryError) as error:

@@ -12,10 +12,10 @@ from pydantic import Field, model_validator
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import PlacedKeys
-from nightcap.geometry.case_file.materials import MaterialKeys
+from nightcap.geometry.case_file.materials import MaterialKeys, MetalKeys
 from nightcap.geometry.case_file.problems import one_of
 from nightcap.geometry.case_file.quantities import Length, PositiveLength
-from nightcap.geometry.case_file.schema import Entry, Flag, Text
+from nightcap.geometry.case_file.schema import Flag, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import Polygon, Rectangle, Shape
 
@@ -33,7 +33,7 @@ class MaskEntry(MaterialKeys):
     thickness: PositiveLength = Field(description="Thickness of the mask.")
 
 
-class TraceEntry(Entry):
+class TraceEntry(MetalKeys):
     """A trace of rectangular or trapezoidal section."""
 
     upon: Text | None = Field(None, description="It lies upon this layer; default: the topmost.")
@@ -86,7 +86,12 @@ def read_board(place: Place, name: str) -> Built | None:
     ]
     level = {layer.name: (low, high) for layer, (low, high) in zip(layers, pairwise(heights), strict=True)}
     conductors = tuple(
-        Conductor(f"{name}.{own}", trace.figure(_foot(trace, level, heights[-1])), (), trace.floating)
+        Conductor(
+            f"{name}.{own}",
+            trace.figure(_foot(trace, level, heights[-1])),
+            floating=trace.floating,
+            conductivity=trace.siemens_per_metre(),
+        )
         for own, trace in traces.items()
     )
     painted = _mask(name, mask, keys.width, heights[-1], conductors) + sheets if mask else sheets

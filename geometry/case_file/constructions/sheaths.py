@@ -10,7 +10,7 @@ from pydantic import Field, model_validator
 from nightcap.geometry.case import Conductor, Dielectric
 from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import PlacedKeys
-from nightcap.geometry.case_file.materials import MaterialKeys
+from nightcap.geometry.case_file.materials import MaterialKeys, MetalKeys
 from nightcap.geometry.case_file.quantities import Degrees, Gauge, PositiveLength
 from nightcap.geometry.case_file.schema import Entry
 from nightcap.geometry.case_file.shapes.keys import exactly_one
@@ -30,7 +30,7 @@ class DrainEntry(Entry):
         return self
 
 
-class ScreenKeys(PlacedKeys):
+class ScreenKeys(PlacedKeys, MetalKeys):
     """A round screen of even thickness, and its drain wire: one conductor."""
 
     inner_diameter: PositiveLength = Field(description="Diameter within.")
@@ -61,7 +61,7 @@ def read_screen(place: Place, name: str) -> Built | None:
         angle = math.radians(drain.facing)
         centre = ((inner - radius) * math.cos(angle), (inner - radius) * math.sin(angle))
         shape = Union((shape, Circle(centre, radius)))
-    return Built((Conductor(name, shape),)).moved(keys.motion())
+    return Built((Conductor(name, shape, conductivity=keys.siemens_per_metre()),)).moved(keys.motion())
 
 
 def read_jacket(place: Place, name: str) -> Built | None:

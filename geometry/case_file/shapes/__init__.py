@@ -112,4 +112,4 @@ def _word(own: type[Entry], tree: Tree, path: str, problems: Problems) -> str | 
 @cache
 def combined(own: type[Entry], shape: type[ShapeKeys]) -> Any:
     """One model of a shape's keys and an entry's own."""
-    return type(f"{own.__name__}{shape.__name__}", (shape, own), {"__module__": __name__})
+    return type(f"{own.__name__}{shape.__name__}", (shape, own), {"__module__": __name__, "__doc__": shape.__doc__})

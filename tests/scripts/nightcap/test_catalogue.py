@@ -28,6 +28,20 @@ def test_a_word_that_none_has(capsys: pytest.CaptureFixture[str]) -> None:
     assert "no material" in capsys.readouterr().err
 
 
+def test_sources_are_shown(capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["materials", "semi-solid"]) == 0
+    assert "    eps_r: found: cable makers' tables" in capsys.readouterr().out.splitlines()
+
+
+def test_materials_as_json(capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["materials", "--json"]) == 0
+    told = json.loads(capsys.readouterr().out)
+    by_name = {one["name"]: one for one in told["insulations"]}
+    assert by_name["polyethylene"]["loss_tangent"]["frequency"] == 60
+    assert {one["name"]: one for one in told["metals"]}["copper"]["conductivity"]["value"] == 58e6
+    assert "licensed practice" in told["caution"]
+
+
 def test_schema_is_printed_as_json(capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["schema"]) == 0
     assert "conductors" in json.loads(capsys.readouterr().out)["properties"]

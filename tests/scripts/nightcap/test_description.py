@@ -1,3 +1,5 @@
+from dataclasses import replace
+
 from stand_ins import open_pair, screened_pair
 
 from nightcap.description import describe, description
@@ -14,6 +16,14 @@ def test_everything_that_the_case_says_is_repeated() -> None:
         "shield 'screen', inside: circle, diameter 2.6 mm", "reference: screen", "3 regions, 2 materials",
     ):  # fmt: skip
         assert part in text
+
+
+def test_metals_are_named_by_their_conductivity() -> None:
+    case, layout = screened_pair()
+    first, *others = case.conductors
+    assert "MS/m" not in "\n".join(description(case, layout))
+    case = replace(case, conductors=(replace(first, conductivity=58e6), *others))
+    assert "    red: circle, diameter 0.5 mm, at (-0.6 mm, 0 mm); 58 MS/m" in list(description(case, layout))
 
 
 def test_open_space_is_named() -> None:

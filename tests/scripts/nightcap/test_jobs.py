@@ -26,6 +26,11 @@ def test_folder_is_searched_in_order_and_gives_the_path_below_it(tmp_path: Path)
     assert names(tmp_path) == ["a", "b", "tail/c.v2"]
 
 
+def test_lists_of_materials_are_no_cases(tmp_path: Path) -> None:
+    touch(tmp_path, "pair.yaml", "materials.yaml", "tail/stock.materials.yml", "rawmaterials.yaml")
+    assert names(tmp_path) == ["pair", "rawmaterials"]
+
+
 def test_two_cases_with_one_result_folder_are_refused(tmp_path: Path) -> None:
     touch(tmp_path, "x/pair.yaml", "y/pair.yaml")
     with pytest.raises(UsageError, match=r"x/pair\.yaml and .*y/pair\.yaml would share the result folder pair"):

@@ -17,3 +17,10 @@ def test_every_package_of_the_tree_is_listed() -> None:
     settings = tomllib.loads((ROOT / "pyproject.toml").read_text("utf-8"))["tool"]["setuptools"]
     assert set(settings["packages"]) == packages_in_the_tree()
     assert settings["package-dir"] == PLACES
+
+
+def test_every_data_file_of_the_tree_is_installed() -> None:
+    data = tomllib.loads((ROOT / "pyproject.toml").read_text("utf-8"))["tool"]["setuptools"]["package-data"]
+    listed = {ROOT / PLACES[package] / name for package, names in data.items() for name in names}
+    found = {path for place in PLACES.values() for path in (ROOT / place).rglob("*") if path.is_file()}
+    assert {path for path in found if path.suffix not in {".py", ".pyc"}} == listed

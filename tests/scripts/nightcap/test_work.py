@@ -1,3 +1,4 @@
+import hashlib
 import json
 import sys
 from collections.abc import Callable
@@ -80,3 +81,16 @@ def test_mistake_of_the_program_names_its_place(
     result, _ = worked(tmp_path)
     assert "internal error at test_work.py:" in result.problems[0].text
     assert "KeyError: 'red'" in result.problems[0].text
+
+
+def test_provenance_names_the_list_of_materials_beside_the_case(tmp_path: Path) -> None:
+    (tmp_path / "stock.materials.yaml").write_text("wax: {permittivity: 2.2}\n")
+    (tmp_path / "coax.yaml").write_text(
+        "materials: stock.materials.yaml\naccuracy: 1 %\nbackground: {material: wax}\n"
+        "conductors: {core: {shape: circle, radius: 1}}\nboundary: {kind: shield, shape: circle, radius: 3}\n"
+    )
+    result = Work(tmp_path / "out", pictures=False)(Job(str(tmp_path / "coax.yaml"), "coax"), lambda _: None)
+    told = json.loads((tmp_path / "out/coax/result.json").read_text())["provenance"]
+    digest = hashlib.sha256((tmp_path / "stock.materials.yaml").read_bytes()).hexdigest()
+    assert (result.status, told["other_files_sha256"]) == ("met", {"stock.materials.yaml": digest})
+    assert told["case_sha256"] == hashlib.sha256((tmp_path / "coax.yaml").read_bytes()).hexdigest()
