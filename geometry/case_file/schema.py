@@ -186,7 +186,8 @@ def _translate(detail: Any, model: type[Entry], path: str, problems: Problems) -
     name = str(detail["loc"][-1]) if detail["loc"] else ""
     if detail["type"] == "extra_forbidden":
         known = words_of(_nested(model, detail["loc"][:-1]))
-        problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}")
+        comma = "; in a number write a point, not a comma" if name.isdigit() else ""
+        problems.add(place, f"unknown key; allowed here: {listed(known)}{nearest(name, known)}{comma}")
     elif detail["type"] == FOLLOWS:
         return
     elif detail["type"] == "missing":

@@ -10,11 +10,12 @@ import nightcap
 
 TOP_EXAMPLES = """\
 examples:
-  nightcap check cases/                     read every case file below cases/, solve nothing
-  nightcap run pair.yaml --out results      solve one case
-  nightcap run cases/ --out results         solve every case file below cases/
+  nightcap check cases/                   read every case below cases/, no more
+  nightcap run pair.yaml --out results    solve one case
+  nightcap run cases/ --out results       solve every case below cases/
 
-exit codes: 0 all cases met, 1 some case was not met or failed, 2 nothing could be run, 130 interrupted.
+exit codes: 0 all cases met (check: can be solved), 1 some case was not met or
+failed, 2 nothing could be run, 130 interrupted.
 'nightcap run --help' and 'nightcap check --help' tell more.
 """
 RUN_EXAMPLES = """\
@@ -130,7 +131,7 @@ def _add_paths(parser: argparse.ArgumentParser) -> None:
 
 
 def accuracy(text: str) -> float:
-    """A fraction between 0 and 1, written as such or in per cent."""
+    """A fraction from 1e-9 to 0.5, as in a case file, written as such or in per cent."""
     number = text.strip()
     scale = 1.0
     if number.endswith("%"):
@@ -139,8 +140,8 @@ def accuracy(text: str) -> float:
         value = float(number) * scale
     except ValueError:
         value = math.nan
-    if not 0.0 < value < 1.0:
-        raise argparse.ArgumentTypeError(f"{text!r} is not between 0 and 1 (examples: 1e-4, '0.01 %')")
+    if not 1e-9 <= value <= 0.5:
+        raise argparse.ArgumentTypeError(f"{text!r} is not between 1e-9 and 0.5 (examples: 1e-4, '0.01 %')")
     return value
 
 

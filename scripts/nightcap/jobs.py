@@ -39,7 +39,7 @@ def find_jobs(paths: Sequence[str]) -> tuple[Job, ...]:
 
     Raises UsageError if a path cannot be read, if there is no case at all, or if two cases share a result folder.
     """
-    jobs = tuple(job for path in paths for job in _jobs_of(path))
+    jobs = tuple(dict.fromkeys(job for path in paths for job in _jobs_of(path)))
     if not jobs:
         raise UsageError(f"no case file (*.yaml, *.yml) found below {', '.join(paths)}")
     _refuse_shared_folders(jobs)

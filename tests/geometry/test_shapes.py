@@ -157,6 +157,8 @@ FAULTS = {
     "shape: regular_polygon, sides: 2, across_flats: 1": "from 3 to 100",
     "shape: regular_polygon, sides: 6": "exactly one of across_flats",
     "shape: polygon, points: [[0, 0], [1, 0], [0, 1]], corner_radius: 0.5": "too large for the shortest side",
+    "shape: polygon, points: [[0, 0], [1, 1], [1, 0], [0, 1]]": "cross or touch",
+    "shape: circle, radius: 0,5": "write a point, not a comma",
     "shape: oval, width: 1, height: 0": "greater than 0",
 }
 

@@ -28,13 +28,16 @@ class PolygonKeys(ShapeKeys):
         size = max(math.dist(points[0], point) for point in points)
         if any(math.dist(a, b) <= 1e-9 * size for a, b in zip(points, points[1:] + points[:1], strict=True)):
             raise ValueError("points: two points that follow each other are the same")
-        if abs(signed_area(points)) <= 1e-9 * size**2:
+        farthest = max(points, key=lambda point: math.dist(points[0], point))
+        if all(abs(_side(points[0], farthest, point)) <= 1e-9 * size**2 for point in points):
             raise ValueError("points: the polygon has no area")
         sides = list(zip(points, points[1:] + points[:1], strict=True))
         for (i, one), (k, two) in combinations(enumerate(sides), 2):
             next_to = k - i in (1, len(sides) - 1)
             if _fold_back(one, two) if next_to else _meet(one, two):
                 raise ValueError(f"points: side {i + 1} and side {k + 1} of the polygon cross or touch")
+        if abs(signed_area(points)) <= 1e-9 * size**2:
+            raise ValueError("points: the polygon has no area")
         return self
 
     def figure(self) -> Polygon:
