@@ -89,14 +89,14 @@ def _rules(model: type[Entry], properties: Mapping[str, Schema]) -> list[Schema]
 
 
 def _property(key: str, info: FieldInfo) -> Schema:
-    taken = _taken(key, info)
-    if key in SUGGESTIONS and taken.get("type") == "string":
-        taken = {"anyOf": [{"enum": SUGGESTIONS[key]}, taken]}
+    told = taken(key, info)
+    if key in SUGGESTIONS and told.get("type") == "string":
+        told = {"anyOf": [{"enum": SUGGESTIONS[key]}, told]}
     shown = {"default": info.default} if isinstance(info.default, str | bool) and info.default != "" else {}
-    return {**taken, **shown, "description": info.description or ""}
+    return {**told, **shown, "description": info.description or ""}
 
 
-def _taken(key: str, info: FieldInfo) -> Schema:
+def taken(key: str, info: FieldInfo) -> Schema:
     """What a key takes: as its type says, or, for what is read by itself, as HOLDS says."""
     told = [item for item in info.metadata if isinstance(item, WithJsonSchema)]
     if told:

@@ -10,6 +10,7 @@ from nightcap.geometry.case_file.yaml_tree import MOST_VALUES, Tree
 GROUPS = ("conductors", "dielectrics", "constructions")
 ALTERNATIVES = (
     ("diameter", "radius", "awg"),
+    ("strand_diameter", "overall_diameter", "awg"),
     ("outer_diameter", "outer_radius"),
     ("inner_diameter", "inner_radius", "wall"),
     ("across_flats", "across_corners"),

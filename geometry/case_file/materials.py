@@ -57,9 +57,9 @@ class MaterialKeys(Entry):
     material: Text = Field(
         "", description="Name of a known material; with a permittivity beside it, any label for pictures and tables."
     )
-    gas_fraction: Fraction | None = Field(None, description="Of a foam: volume of gas over the whole, 0 to 1.")
+    gas_fraction: Fraction | None = Field(None, description="Of a foam: volume of gas over the whole, at most 0.99.")
     mixing: Annotated[str, BeforeValidator(_law), WithJsonSchema({"enum": list(LAWS)})] = Field(
-        DEFAULT_LAW, description=f"Law for the foam's permittivity: {', '.join(LAWS)}."
+        DEFAULT_LAW, description="Law of mixing for the permittivity of the foam."
     )
     _record: Material = PrivateAttr(Material(1.0))
 

@@ -33,6 +33,8 @@ def parallel(outline: Outline, distance: float) -> Outline:
 
     Raises ValueError where an arc turns inwards too sharply, or where the result would meet itself.
     """
+    if distance == 0.0:  # else corners would turn into arcs of no length
+        return outline
     turns = [_turn(before, curve) for before, curve in pairwise((outline[-1], *outline))]
     curves: list[Curve] = []
     for curve, turn, following in zip(outline, turns, turns[1:] + turns[:1], strict=True):

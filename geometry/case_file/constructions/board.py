@@ -14,7 +14,7 @@ from nightcap.geometry.case_file.constructions.built import Built, Place
 from nightcap.geometry.case_file.constructions.groups import PlacedKeys
 from nightcap.geometry.case_file.materials import MaterialKeys, MetalKeys
 from nightcap.geometry.case_file.problems import one_of
-from nightcap.geometry.case_file.quantities import Length, PositiveLength
+from nightcap.geometry.case_file.quantities import Degrees, Length, PointOf, PositiveLength
 from nightcap.geometry.case_file.schema import Flag, Text
 from nightcap.geometry.curves import Point
 from nightcap.geometry.shapes import Polygon, Rectangle, Shape
@@ -64,6 +64,8 @@ class TraceEntry(MetalKeys):
 class BoardKeys(PlacedKeys):
     """Layers from below upwards; ``at`` is the middle of the lowest face."""
 
+    at: PointOf = Field((0.0, 0.0), description="Middle of its lowest face.")
+    rotate: Degrees = Field(0.0, description="Degrees, counter-clockwise about that point.")
     width: PositiveLength = Field(description="Width of the board.")
     layers: Any = Field(description="Layers from below upwards: thickness, material, name.")
     traces: Any = Field(None, description="Name to trace: upon, x, width, top, thickness.")

@@ -23,7 +23,7 @@ class BentStripKeys(ShapeKeys):
         description="Points of its middle line."
     )
     thickness: PositiveLength = Field(description="Thickness of the strip.")
-    ends: Literal["flat", "round"] = Field("flat", description="flat or round.")
+    ends: Literal["flat", "round"] = Field("flat", description="How its two ends are shaped.")
 
     @model_validator(mode="after")
     def _is_simple(self) -> BentStripKeys:

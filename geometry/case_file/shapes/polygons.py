@@ -8,7 +8,15 @@ from typing import Annotated
 
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from nightcap.geometry.case_file.quantities import LengthFromZero, PlainNumber, Points, PositiveLength, whole
+from nightcap.geometry.case_file.quantities import (
+    Degrees,
+    LengthFromZero,
+    PlainNumber,
+    PointOf,
+    Points,
+    PositiveLength,
+    whole,
+)
 from nightcap.geometry.case_file.schema import COUNT
 from nightcap.geometry.case_file.shapes.keys import ShapeKeys, TurnedKeys, exactly_one
 from nightcap.geometry.curves import Point
@@ -74,6 +82,8 @@ class RegularPolygonKeys(TurnedKeys):
 class TrapezoidKeys(TurnedKeys):
     """An etched trace: a foot along x, a narrower or wider top; ``at`` is the middle of the foot."""
 
+    at: PointOf = Field((0.0, 0.0), description="Middle of the foot.")
+    rotate: Degrees = Field(0.0, description="Degrees, counter-clockwise about the middle of the foot.")
     foot: PositiveLength = Field(description="Width below.")
     height: PositiveLength = Field(description="Height.")
     top: PositiveLength | None = Field(None, description="Width above.")

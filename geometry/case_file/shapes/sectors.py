@@ -14,6 +14,8 @@ from nightcap.geometry.shapes import LappedStrip, Sector, Shape
 class SectorKeys(TurnedKeys):
     """Part of a ring or of a disc between two directions, counter-clockwise; ``at`` is the centre of its arcs."""
 
+    at: PointOf = Field((0.0, 0.0), description="Centre of its arcs.")
+    rotate: Degrees = Field(0.0, description="Degrees, counter-clockwise about that centre.")
     outer_radius: PositiveLength = Field(description="Radius of the outer arc.")
     inner_radius: LengthFromZero = Field(0.0, description="Radius of the inner arc; 0 for a part of a disc.")
     start: Degrees = Field(alias="from", description="Direction of one flank, degrees from the x axis.")

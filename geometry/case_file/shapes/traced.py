@@ -8,7 +8,7 @@ from typing import Annotated, Any
 
 from pydantic import BeforeValidator, Field, PrivateAttr, ValidationInfo, WithJsonSchema, model_validator
 
-from nightcap.geometry.case_file.quantities import LENGTHS, PlainNumber
+from nightcap.geometry.case_file.quantities import LENGTHS, Degrees, PlainNumber, PointOf
 from nightcap.geometry.case_file.schema import Flag, Text
 from nightcap.geometry.case_file.shapes.keys import TurnedKeys, exactly_one
 from nightcap.geometry.curves import Arc, Curve, Segment
@@ -31,6 +31,8 @@ def _unit(value: object) -> str:
 class OutlineKeys(TurnedKeys):
     """A closed outline from SVG path data or well-known text; ``at`` is where its origin goes."""
 
+    at: PointOf = Field((0.0, 0.0), description="Where the origin of its numbers goes.")
+    rotate: Degrees = Field(0.0, description="Degrees, counter-clockwise about its origin.")
     path: Text | None = Field(None, description="SVG path data, e.g. 'M 0 0 H 2 V 1 Z'.")
     wkt: Text | None = Field(None, description="OGC well-known text of one polygon.")
     file: Text | None = Field(None, description="A file beside the case: .svg with one path, or .wkt.")

@@ -58,10 +58,10 @@ def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
     from matplotlib.figure import Figure
 
     drawing = paint(case)
-    low, high = _extent(case, drawing)
+    low, high = extent(case, drawing)
     room = MARGIN * float((high - low).max())
     width, height = (high - low + 2 * room).tolist()
-    marked, palette = measures(case, drawing), _palette(case, drawing)
+    marked, palette = measures(case, drawing), palette_of(case, drawing)
     notes = _notes(marked, problems)
     shape = (min(WIDTH * height / width, TALLEST), 0.2 + 0.14 * len(notes))
     figure = Figure(figsize=(WIDTH, sum(shape) + 0.9), layout="constrained")
@@ -72,12 +72,12 @@ def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
     axes.set_ylim(low[1] - room, high[1] + room)
     axes.set_title(literal(fill(case.title, 80)), fontsize=10)
     labels = Labels(axes, 72 * min(WIDTH / width, TALLEST / height))
-    _paint(axes, case, drawing, palette)
+    paint_figures(axes, case, drawing, palette)
     _overall(axes, low, high, room)
     _flags(axes, problems, labels)
     for measure in marked:
         _mark(axes, measure, labels)
-    _names(case, labels)
+    write_names(case, labels)
     text.text(0.0, 1.0, literal("\n".join(notes)), fontsize=7, va="top", transform=text.transAxes)
     for part in (axes, text):
         part.set_axis_off()
@@ -85,7 +85,7 @@ def _figure(case: Case, problems: Sequence[Problem]) -> Figure:
     return figure
 
 
-def _extent(case: Case, drawing: Drawing) -> tuple[Floats, Floats]:
+def extent(case: Case, drawing: Drawing) -> tuple[Floats, Floats]:
     """Corners of the box around all that is drawn, the shield and straight walls included; of slabs the edges."""
     low, high = (corner.copy() for corner in drawing.domain.shown)
     for line in straight_edges(case):
@@ -93,12 +93,12 @@ def _extent(case: Case, drawing: Drawing) -> tuple[Floats, Floats]:
     return low, high
 
 
-def _palette(case: Case, drawing: Drawing) -> list[Material]:
+def palette_of(case: Case, drawing: Drawing) -> list[Material]:
     """The materials, each once, the background first."""
     return list(dict.fromkeys([case.background, *(d.material for d in drawing.drawn if d.material is not None)]))
 
 
-def _paint(axes: Axes, case: Case, drawing: Drawing, palette: list[Material]) -> None:
+def paint_figures(axes: Axes, case: Case, drawing: Drawing, palette: list[Material]) -> None:
     """Figure over figure, in the order in which they cover each other."""
     if isinstance(case.boundary, Shield):
         tone, hatch = style_of(0)
@@ -116,12 +116,28 @@ def _paint(axes: Axes, case: Case, drawing: Drawing, palette: list[Material]) ->
         axes.add_patch(filled(loops, fill=False, edgecolor="0.15", linewidth=thick, zorder=level + 5e-4))
 
 
-def _names(case: Case, labels: Labels) -> None:
+def write_names(case: Case, labels: Labels) -> None:
     """Names of conductors, where there is room."""
     for conductor in case.conductors:
-        points = np.concatenate([points_along(curve) for curve in conductor.shape.outline()])
-        low, high = points.min(axis=0), points.max(axis=0)
-        labels.put(conductor.name, (low + high) / 2)
+        labels.put(conductor.name, _place_of_name([points_along(curve) for curve in conductor.shape.outline()]))
+
+
+def _place_of_name(curves: Sequence[Floats]) -> Floats:
+    """The middle of the box around a figure, or of the first stretch of the figure level with it if it is hollow there.
+
+    curves : (n, 2) points along each of its curves, m.
+    """
+    points = np.concatenate(curves)
+    middle = (points.min(axis=0) + points.max(axis=0)) / 2
+    starts, ends = (np.concatenate(part) for part in zip(*((c[:-1], c[1:]) for c in curves), strict=True))
+    crossing = (starts[:, 1] <= middle[1]) != (ends[:, 1] <= middle[1])
+    (x0, y0), (x1, y1) = starts[crossing].T, ends[crossing].T
+    walls = np.sort(x0 + (middle[1] - y0) / (y1 - y0) * (x1 - x0))
+    if np.count_nonzero(walls < middle[0]) % 2:
+        return np.asarray(middle)
+    if len(walls) > 1:
+        return np.array([walls[:2].mean(), middle[1]])
+    return np.asarray(points[np.argmin(np.hypot(*(points - middle).T))])
 
 
 def loops_of(outline: Outline) -> list[Floats]:
