@@ -89,11 +89,11 @@ def _rules(model: type[Entry], properties: Mapping[str, Schema]) -> list[Schema]
 
 
 def _property(key: str, info: FieldInfo) -> Schema:
-    told = taken(key, info)
-    if key in SUGGESTIONS and told.get("type") == "string":
-        told = {"anyOf": [{"enum": SUGGESTIONS[key]}, told]}
+    kind = taken(key, info)
+    if key in SUGGESTIONS and kind.get("type") == "string":
+        kind = {"anyOf": [{"enum": SUGGESTIONS[key]}, kind]}
     shown = {"default": info.default} if isinstance(info.default, str | bool) and info.default != "" else {}
-    return {**told, **shown, "description": info.description or ""}
+    return {**kind, **shown, "description": info.description or ""}
 
 
 def taken(key: str, info: FieldInfo) -> Schema:

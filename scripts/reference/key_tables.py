@@ -31,6 +31,10 @@ PLACES = {
     "CoatingEntry": ("coating", "coatings"),
     "MaterialKeys": ("material", "materials"),
     "OwnMaterialEntry": ("material of its own", "materials-of-a-file-of-its-own"),
+    "PermittivityEntry": ("property in full", "materials-of-a-file-of-its-own"),
+    "LossTangentEntry": ("property in full", "materials-of-a-file-of-its-own"),
+    "BreakdownEntry": ("property in full", "materials-of-a-file-of-its-own"),
+    "ConductivityEntry": ("property in full", "materials-of-a-file-of-its-own"),
     "LineKeys": ("line", "symmetry"),
     "TwistKeys": ("twist", "twist"),
     "LimitsEntry": ("limits", "limits"),
@@ -43,29 +47,17 @@ PLACES = {
     "TraceEntry": ("trace", "construction-board"),
     "MaskEntry": ("mask", "construction-board"),
     "DrainEntry": ("drain wire", "construction-screen"),
-    "PermittivityEntry": ("mapping with value, range, source", "materials-of-a-file-of-its-own"),
-    "LossTangentEntry": ("mapping with value, range, frequency, source", "materials-of-a-file-of-its-own"),
-    "BreakdownEntry": ("mapping with range, note, source", "materials-of-a-file-of-its-own"),
-    "ConductivityEntry": ("mapping with value, source", "materials-of-a-file-of-its-own"),
 }
 """What a key holds, by the name that the schema has for it: a word, and the part of the page that tells of it."""
 UNIT = "[unit of length](#how-values-are-written)"
-NOTHING = "-"
-TYPES = {
-    "string": "text",
-    "number": "number",
-    "integer": "whole number",
-    "boolean": "`true` or `false`",
-    "object": "mappings, see below",
-    "array": "list",
-}
+NOTHING = ""
 CHOSEN_BY = ("shape", "kind")
 """The keys that say which other keys there are; the headings name them."""
 PLACE = ("at", "rotate")
 """Keys that come last, unless they are what an entry is about."""
 ELSEWHERE: tuple[tuple[type[Entry], str], ...] = (
     (MaterialKeys, "the keys of a [material](#materials)"),
-    (MetalKeys, "those of a [metal](#metals)"),
+    (MetalKeys, "the keys of a [metal](#metals)"),
 )
 """Keys that many entries share and that have a table of their own."""
 
@@ -109,24 +101,20 @@ def _alternatives(model: type[Entry], key: str) -> tuple[str, ...]:
     return next((group for group in alternatives(model) if key in group), ())
 
 
-def _default(key: str, value: Any, kind: dict[str, Any]) -> str:  # noqa: PLR0911 - one return for each kind
-    """A default as one would write it in a file."""
-    if value is None or value in ("", ()):
-        return NOTHING
-    if isinstance(value, bool):
-        return f"`{str(value).lower()}`"
+def _default(key: str, value: Any, kind: dict[str, Any]) -> str:
+    """A default as one would write it in a file; nothing for what is then not there."""
+    return NOTHING if value is None or value in ("", ()) else f"`{_written(key, value, kind.get('title', ''))}`"
+
+
+def _written(key: str, value: Any, title: str) -> str:
+    if isinstance(value, bool | str):
+        return str(value).lower() if isinstance(value, bool) else value
     if isinstance(value, tuple):
-        return f"`[{', '.join(f'{item:g}' for item in value)}]`"
-    if isinstance(value, str):
-        return f"`{value}`"
-    title = kind.get("title", "")
+        return f"[{', '.join(f'{item:g}' for item in value)}]"
     if key == "units":
-        return f"`{next(unit for unit, metres in LENGTHS.items() if metres == value)}`"
-    if title.startswith("bytes"):
-        return f"`{value / 1e9:g} GB`"
-    if title.startswith("seconds"):
-        return f"`{value / 60:g} min`"
-    return f"`{value}`" if isinstance(value, int) else f"`{_short(value)}`"
+        return next(unit for unit, metres in LENGTHS.items() if metres == value)
+    of_unit = {"bytes": f"{value / 1e9:g} GB", "seconds": f"{value / 60:g} min"}.get(title.partition(",")[0])
+    return of_unit or (str(value) if isinstance(value, int) else _short(value))
 
 
 def _short(value: float) -> str:
@@ -135,22 +123,29 @@ def _short(value: float) -> str:
     return f"{float(digits):g}e{int(exponent)}" if 0 < abs(value) < 1e-2 else f"{value:g}"
 
 
-def words_for(kind: dict[str, Any]) -> str:  # noqa: PLR0911 - one return for each kind
+def words_for(kind: dict[str, Any]) -> str:
     """What a key takes, from its schema."""
     if "title" in kind:
         return str(kind["title"])
-    if set(kind.get("enum", ())) == set(LENGTHS):
-        return UNIT
     if "enum" in kind:
-        return ", ".join(f"`{word}`" for word in kind["enum"])
+        return UNIT if set(kind["enum"]) == set(LENGTHS) else ", ".join(f"`{word}`" for word in kind["enum"])
     if "anyOf" in kind:
         return " or ".join(dict.fromkeys(words_for(one) for one in kind["anyOf"]))
     if "$ref" in kind:
         word, anchor = PLACES[kind["$ref"].rpartition("/")[2]]
         return f"[{word}](#{anchor})"
-    if kind.get("type") == "object" and "additionalProperties" in kind and kind["additionalProperties"] is not False:
-        return f"names, each a {words_for(kind['additionalProperties'])}"
-    if kind.get("type") == "array":
-        return f"list of {words_for(kind['items'])}" if "items" in kind else "list"
-    types = [kind["type"]] if isinstance(kind["type"], str) else kind["type"]
-    return " or ".join(TYPES[one] for one in types)
+    return _of_several(kind)
+
+
+def _of_several(kind: dict[str, Any]) -> str:
+    """What a mapping, a list, or a plain value takes."""
+    below = kind.get("additionalProperties")
+    if isinstance(below, dict):
+        return f"{'headings with' if 'additionalProperties' in below else 'names, each a'} {words_for(below)}"
+    if isinstance(kind["type"], list):
+        return "number"
+    if kind["type"] == "array" and "items" in kind:
+        return f"list of {words_for(kind['items'])}"
+    return {"string": "text", "boolean": "`true` or `false`", "object": "mappings, see below", "array": "list"}[
+        kind["type"]
+    ]

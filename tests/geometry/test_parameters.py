@@ -9,7 +9,7 @@ from numpy.testing import assert_allclose
 from nightcap.geometry.case import Case, Shield
 from nightcap.geometry.case_file import list_variants, read_case, read_text, read_variant, read_variants
 from nightcap.geometry.errors import CaseError
-from nightcap.geometry.shapes import Circle, Rectangle
+from nightcap.geometry.shapes import Circle, Rectangle, Strands
 
 PAIR = """\
 units: mm
@@ -160,6 +160,19 @@ boundary: {kind: open}
     assert case.source.lines["conductors.b.diameter"] == 7
     assert case.source.lines["conductors.b.at"] == 4
     assert case.source.lines["conductors.c.shape"] == 6
+
+
+def test_like_gives_strands_another_size_in_another_way() -> None:
+    text = """
+conductors:
+  a: {shape: strands, count: 7, strand_diameter: 0.2, at: [-2, 0]}
+  b: {like: a, overall_diameter: 0.9, at: [0, 0]}
+  c: {like: b, awg: 36, at: [2, 0]}
+boundary: {kind: open}
+"""
+    shapes = [conductor.shape for conductor in read_text(text).conductors]
+    radii = [shape.overall_radius for shape in shapes if isinstance(shape, Strands)]
+    assert_allclose(radii, [0.3e-3, 0.45e-3, 1.5 * 0.127e-3], rtol=1e-12)  # AWG 36 is 0.005 in, ASTM B258
 
 
 def test_a_mistake_in_an_inherited_key_points_to_where_it_was_written() -> None:

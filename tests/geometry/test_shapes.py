@@ -124,6 +124,14 @@ def test_a_coating_adds_the_area_of_a_parallel_band(name: str, thickness: float)
     assert_allclose(band, length(outline) * thickness + math.pi * thickness**2 - hollow, rtol=1e-8)
 
 
+@pytest.mark.parametrize("name", SHAPES)
+def test_a_layer_of_no_thickness_changes_nothing(name: str) -> None:
+    one = figure(SHAPES[name][0])
+    grown = one.grown(0.0).outline()
+    assert min(curve.length for curve in grown) > 0
+    assert_allclose(area(grown), area(one.outline()), rtol=1e-12)
+
+
 def test_lapped_foil_goes_around_and_over_itself() -> None:
     keys = "shape: arc_strip, inner_radius: 2, thickness: 0.1, overlap: 1, clearance: 0.05, facing: 90"
     outline = figure(keys).outline()

@@ -119,25 +119,26 @@ def paint_figures(axes: Axes, case: Case, drawing: Drawing, palette: list[Materi
 def write_names(case: Case, labels: Labels) -> None:
     """Names of conductors, where there is room."""
     for conductor in case.conductors:
-        labels.put(conductor.name, _place_of_name([points_along(curve) for curve in conductor.shape.outline()]))
+        labels.put(conductor.name, place_of_name([points_along(curve) for curve in conductor.shape.outline()]))
 
 
-def _place_of_name(curves: Sequence[Floats]) -> Floats:
+def place_of_name(curves: Sequence[Floats]) -> Floats:
     """The middle of the box around a figure, or of the first stretch of the figure level with it if it is hollow there.
 
     curves : (n, 2) points along each of its curves, m.
     """
     points = np.concatenate(curves)
-    middle = (points.min(axis=0) + points.max(axis=0)) / 2
+    middle: Floats = (points.min(axis=0) + points.max(axis=0)) / 2
     starts, ends = (np.concatenate(part) for part in zip(*((c[:-1], c[1:]) for c in curves), strict=True))
     crossing = (starts[:, 1] <= middle[1]) != (ends[:, 1] <= middle[1])
     (x0, y0), (x1, y1) = starts[crossing].T, ends[crossing].T
     walls = np.sort(x0 + (middle[1] - y0) / (y1 - y0) * (x1 - x0))
     if np.count_nonzero(walls < middle[0]) % 2:
-        return np.asarray(middle)
+        return middle
     if len(walls) > 1:
         return np.array([walls[:2].mean(), middle[1]])
-    return np.asarray(points[np.argmin(np.hypot(*(points - middle).T))])
+    nearest: Floats = points[np.argmin(np.hypot(*(points - middle).T))]
+    return nearest
 
 
 def loops_of(outline: Outline) -> list[Floats]:

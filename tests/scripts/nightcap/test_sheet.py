@@ -16,7 +16,8 @@ from nightcap.geometry.gaps import smallest_gap, surfaces
 from nightcap.geometry.painting import paint
 from nightcap.outputs.labels import Labels
 from nightcap.outputs.measures import measures
-from nightcap.outputs.sheet import loops_of
+from nightcap.outputs.outlines import points_along
+from nightcap.outputs.sheet import loops_of, place_of_name
 
 GOOD = """\
 title: Two wires and a bar
@@ -107,6 +108,23 @@ def test_outlines_fall_into_closed_loops() -> None:
     outline = read_text(GOOD).conductors[0].shape.outline()
     assert len(loops_of(outline)) == 1
     assert len(loops_of((*outline, *read_text(GOOD).conductors[1].shape.outline()))) == 2
+
+
+@pytest.mark.parametrize(
+    ("keys", "place"),
+    [
+        ("shape: rectangle, width: 3, height: 2, at: [1, 1]", (1, 1)),
+        ("shape: ring, outer_radius: 2, inner_radius: 1", (-1.5, 0)),
+        ("shape: bent_strip, points: [[-2, 2], [-2, 0], [2, 0], [2, 2]], thickness: 0.4", (-2, 0.9)),
+        ("shape: strip, points: [[-3, 4], [-2, 0], [2, 0], [3, 4]]", (-2.5, 2)),
+    ],
+)
+def test_names_stand_on_what_they_name(keys: str, place: tuple[float, float]) -> None:
+    """On the middle of a figure; on its metal, level with the middle, where that is a hollow."""
+    text = f"conductors: {{one: {{{keys}}}}}\nboundary: {{kind: ground_plane, at: -9}}\n"
+    outline = read_text(text).conductors[0].shape.outline()
+    curves = [points_along(curve) for curve in outline]
+    assert_allclose(place_of_name(curves) * 1e3, place, atol=1e-3)
 
 
 def test_labels_do_not_cover_each_other() -> None:
